@@ -1,0 +1,17 @@
+# SPDX-License-Identifier: GPL-3.0-or-later
+# Writes OUT: a source that holds the text of FILES (a list) and hands it out through FUNCTION.
+set(text "#include \"engine/embedded.hpp\"\nnamespace binwright {\nnamespace {\n")
+set(table "")
+set(n 0)
+foreach(file IN LISTS FILES)
+    get_filename_component(name "${file}" NAME)
+    file(READ "${file}" hex HEX)
+    string(REGEX REPLACE "([0-9a-f][0-9a-f])" "0x\\1," bytes "${hex}")
+    string(APPEND text "const unsigned char bytes_${n}[] = {${bytes}0};\n")
+    string(APPEND table "    {\"${name}\", {reinterpret_cast<const char*>(bytes_${n}), sizeof bytes_${n} - 1}},\n")
+    math(EXPR n "${n} + 1")
+endforeach()
+string(APPEND text "const EmbeddedFile table[] = {\n${table}};\n}\n")
+string(APPEND text "std::span<const EmbeddedFile> ${FUNCTION}();\n")
+string(APPEND text "std::span<const EmbeddedFile> ${FUNCTION}() { return table; }\n}\n")
+file(WRITE "${OUT}" "${text}")
