@@ -1,0 +1,88 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// Verdicts: what is fitted held to a rulebook, and the bin's lots ranked for a seat. Numbers only; engine/words makes
+// sentences of them.
+#pragma once
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "engine/answer/exposure.hpp"
+
+namespace binwright {
+
+enum class Verdict { holds, unproven, rejected, not_covered };
+[[nodiscard]] std::string_view to_string(Verdict verdict);  ///< "holds", "unproven", "rejected", "not covered"
+/// The graver of two: rejected > unproven > not covered > holds.
+[[nodiscard]] Verdict graver(Verdict a, Verdict b);
+
+enum class Do { rating, operating, parallel, heatsink, measure, swap };
+[[nodiscard]] std::string_view to_string(Do action);
+
+struct Remedy {
+    Do action{};
+    std::string figure;             ///< "U_R", "output_voltage", "ESR", "heatsink.small.resistance", "count"
+    Unit unit = Unit::none;
+    std::optional<double> at_least, at_most;
+    std::optional<double> usual;    ///< next value that can be had
+    Conditions at;                  ///< of a measurement
+};
+
+/// The figure whose value decides an unproven finding.
+struct Bound {
+    Symbol figure{};
+    std::optional<double> at_most, at_least;
+    Conditions at;
+};
+
+struct Finding {
+    Seat seat{};
+    bool of_converter = false;  ///< a finding of the whole converter (regulation): seat is meaningless
+    std::string reference;      ///< "C12"
+    std::string lot;            ///< label; empty for typed figures or a bare element
+    std::string part;           ///< name of the type
+    std::string book;           ///< rulebook name
+    Rule rule;
+    Verdict verdict = Verdict::unproven;
+    std::optional<StressValue> stress;  ///< at the end that decides the verdict (worst; best when rejected outright)
+    std::optional<double> rating, limit;
+    std::optional<double> used, left, headroom;  ///< contract.md, JSON
+    std::optional<Bound> bound;
+    std::string missing;                ///< the figure not on record, when that is why
+    std::vector<std::string> rests_on;
+    std::vector<Remedy> remedies;
+};
+
+struct SeatReport {
+    Seat seat{};
+    std::string reference, lot, part;  ///< of one fitted kind
+    Verdict verdict = Verdict::unproven;
+    std::vector<Finding> findings;     ///< gravest and tightest first
+};
+
+struct CheckReport {
+    Verdict verdict = Verdict::unproven;
+    std::vector<SeatReport> seats;
+    std::vector<Finding> converter;    ///< regulation
+    Exposure exposure;                 ///< at the worst end
+};
+
+/// Judges what is fitted. @throws as expose
+[[nodiscard]] CheckReport check(const Setup& setup, const Rulebook& book, const Progress& progress = {});
+
+enum class Prefer { headroom, cool, life, thrift };
+[[nodiscard]] std::optional<Prefer> find_prefer(std::string_view text);
+[[nodiscard]] std::string_view to_string(Prefer prefer);
+
+struct Candidate {
+    Lot lot;
+    SeatReport report;
+    std::vector<std::string> knock_on;  ///< seats of others whose verdict changes because of it, with both verdicts
+    double preference = 0;              ///< larger is better, within one verdict
+};
+
+/// Judges each lot in the seat, everything else as fitted; best first: verdict, then the preference, then the label.
+/// A lot with fewer pieces than the seat's count is judged with what it has.
+[[nodiscard]] std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot>& lots, const Rulebook& book,
+                                          Prefer prefer = Prefer::headroom, const Progress& progress = {});
+
+}  // namespace binwright
