@@ -124,6 +124,13 @@ struct SteadyState {
 /// @throws OutsideModel naming the first value out of range, or why the circuit has no periodic steady state
 [[nodiscard]] SteadyState solve(const Circuit& circuit, const OperatingPoint& point);
 
+/// All branch currents and voltages over one period, at the switching instants (both sides) and `samples` times between.
+struct Waveforms {
+    std::vector<std::string> names;            ///< "time", "switch.current", "switch.voltage", "output_capacitor.voltage" …
+    std::vector<std::vector<double>> columns;  ///< one a name, SI units
+};
+[[nodiscard]] Waveforms waveforms(const Circuit& circuit, const OperatingPoint& point, int samples = 200);
+
 /// A solver that keeps the derived network and the last solution: sweeping neighbouring points is faster with one of these.
 class Solver {
   public:
@@ -136,14 +143,8 @@ class Solver {
 
   private:
     struct Inside;
+    friend Waveforms waveforms(const Circuit& circuit, const OperatingPoint& point, int samples);
     std::unique_ptr<Inside> inside_;
 };
-
-/// All branch currents and voltages over one period, at the switching instants (both sides) and `samples` times between.
-struct Waveforms {
-    std::vector<std::string> names;            ///< "time", "switch.current", "switch.voltage", "output_capacitor.voltage" …
-    std::vector<std::vector<double>> columns;  ///< one a name, SI units
-};
-[[nodiscard]] Waveforms waveforms(const Circuit& circuit, const OperatingPoint& point, int samples = 200);
 
 }  // namespace binwright
