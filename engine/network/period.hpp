@@ -220,23 +220,26 @@ class Period {
     /// At a set duty, from nothing. @returns false when no periodic state was found
     bool settle(double duty_value) {
         double current = 0;
-        if (!periodic(duty_value, 1 - duty_value, current)) return false;
-        if (current < 0 && duty_value > 0) {
+        const double longest = 1 - duty_value;
+        if (!periodic(duty_value, longest, current)) return false;
+        if (shoot({}, 14)) return true;
+        // Newton from the continuous solution went astray: bracket the rectifier's conduction first.
+        if (!periodic(duty_value, longest, current)) return false;
+        if (current < 0) {
             bool sound = true;
             const auto residual = [&](double conduction) {
                 double value = 0;
                 sound = periodic(duty_value, conduction, value) && sound;
                 return value;
             };
-            const double low = 1e-9 * (1 - duty_value), high = 1 - duty_value;
-            const double at_low = residual(low);
-            if (sound && at_low > 0) {
-                std::uintmax_t steps = 60;
-                const auto bracket = boost::math::tools::toms748_solve(
-                    residual, low, high, at_low, current,
-                    [](double a, double b) { return std::abs(a - b) <= 1e-6 * std::max(a, b); }, steps);
-                residual(0.5 * (bracket.first + bracket.second));
-            }
+            double low = 0.5 * longest, at_low = residual(low);
+            for (int k = 0; k < 40 && sound && !(at_low > 0); ++k) at_low = residual(low *= 0.5);
+            if (!sound || !(at_low > 0)) return relax(duty_value);
+            std::uintmax_t steps = 60;
+            const auto bracket = boost::math::tools::toms748_solve(
+                residual, low, std::min(2 * low, longest), at_low, residual(std::min(2 * low, longest)),
+                [](double a, double b) { return std::abs(a - b) <= 1e-9 * std::max(a, b); }, steps);
+            residual(0.5 * (bracket.first + bracket.second));
             if (!sound) return false;
         }
         const Column<N> guess = start;
@@ -360,7 +363,8 @@ class Period {
     }
 
     /// Root of sign·row·exp(G s)·at in (0, step]; positive at 0 (or zero there and rising).
-    double root(const Generator<N>& gen, const double* row, double sign, Column<N> at, double step, bool starts_at_zero) {
+    double root(const Generator<N>& gen, const double* row, double sign, const Column<N>& from, double step, bool starts_at_zero) {
+        Column<N> at = from;
         double offset = 0;
         while (gen.norm * step > kTaylorReach) {
             step *= 0.5;
