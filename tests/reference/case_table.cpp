@@ -53,12 +53,17 @@ std::string describe(const Converter& c) {
     std::ostringstream s;
     s.precision(12);
     s << c.name << ": " << kKinds[static_cast<int>(c.kind)] << " Vin " << c.vin;
-    if (c.vout) s << " Vout " << *c.vout;
-    else s << " duty " << c.duty;
+    if (c.vout)
+        s << " Vout " << *c.vout;
+    else
+        s << " duty " << c.duty;
     s << " load " << kLoads[static_cast<int>(c.load)] << ' ' << c.load_value << " f " << c.f << " source "
-      << (c.feed == Feed::mean ? "mean" : c.feed == Feed::stiff ? "stiff" : "impedance") << ' ' << c.source_R << '/' << c.source_L
-      << " L1 " << c.L1 << '/' << c.R1 << " L2 " << c.L2 << '/' << c.R2 << " k " << c.k << " n " << c.n << " switch " << c.r_switch
-      << '+' << c.r_sense << " rectifier " << c.vt0 << '/' << c.rd;
+      << (c.feed == Feed::mean    ? "mean"
+          : c.feed == Feed::stiff ? "stiff"
+                                  : "impedance")
+      << ' ' << c.source_R << '/' << c.source_L << " L1 " << c.L1 << '/' << c.R1 << " L2 " << c.L2 << '/' << c.R2
+      << " k " << c.k << " n " << c.n << " switch " << c.r_switch << '+' << c.r_sense << " rectifier " << c.vt0 << '/'
+      << c.rd;
     const auto bank = [&s](const char* name, const std::vector<Capacitor>& branches) {
         s << ' ' << name;
         for (const auto& branch : branches) s << ' ' << branch.C << '/' << branch.r;
@@ -89,8 +94,10 @@ std::vector<Converter> read_cases(const std::string& path) {
         c.name = row.at("name");
         c.kind = static_cast<Kind>(find(kKinds, row.at("topology")));
         const auto& source = row.at("source");
-        if (source == "mean") c.feed = Feed::mean;
-        else if (source == "stiff") c.feed = Feed::stiff;
+        if (source == "mean")
+            c.feed = Feed::mean;
+        else if (source == "stiff")
+            c.feed = Feed::stiff;
         else {
             const auto parts = split(source, '/');
             if (parts.size() != 2) throw std::runtime_error("cases: a source is mean, stiff or R/L: " + source);

@@ -2,8 +2,9 @@
 // The seven converters by integration in time: an independent reference for the engine's steady state.
 //
 // Nothing of the engine is used here. Every topology has its own equations, written by hand from its circuit for every
-// position of switch and rectifier (topologies.cpp); GSL integrates them (Prince-Dormand 8(9) with error control), finds the
-// instant at which the rectifier stops or starts, the periodic state (Newton on the state at turn-on) and the duty.
+// position of switch and rectifier (topologies.cpp); GSL integrates them (Prince-Dormand 8(9) with error control),
+// finds the instant at which the rectifier stops or starts, the periodic state (Newton on the state at turn-on) and the
+// duty.
 #pragma once
 #include <optional>
 #include <string>
@@ -12,7 +13,7 @@
 namespace reference {
 
 enum class Kind { buck, boost, inverting, sepic, cuk, zeta, flyback };
-enum class Feed { mean, stiff, impedance };       ///< mean: a constant current such that the mean terminal voltage is V_in
+enum class Feed { mean, stiff, impedance };  ///< mean: a constant current such that the mean terminal voltage is V_in
 enum class LoadKind { current, resistance, power };  ///< power: the constant current P/(mean output voltage)
 
 struct Capacitor {
@@ -31,10 +32,11 @@ struct Converter {
     LoadKind load = LoadKind::current;
     double load_value = 0;  ///< [A], [Ω] or [W]
     double f = 0;           ///< [Hz]
-    double L1 = 0, R1 = 0;  ///< [H], [Ω]: the only winding, the input side (zeta: at the switch), or the magnetising inductance
-    double L2 = 0, R2 = 0;  ///< second winding; flyback: L2 is L1·n²
-    double k = 0;           ///< coupling; flyback: 1 or less
-    double n = 1;           ///< N_secondary/N_primary, flyback
+    double L1 = 0,
+           R1 = 0;  ///< [H], [Ω]: the only winding, the input side (zeta: at the switch), or the magnetising inductance
+    double L2 = 0, R2 = 0;                              ///< second winding; flyback: L2 is L1·n²
+    double k = 0;                                       ///< coupling; flyback: 1 or less
+    double n = 1;                                       ///< N_secondary/N_primary, flyback
     double r_switch = 0, r_sense = 0, vt0 = 0, rd = 0;  ///< [Ω], [Ω], [V], [Ω]
     std::vector<Capacitor> cin, cs, co;
 };
@@ -48,7 +50,7 @@ struct Figure {
 
 struct Solution {
     double duty = 0;
-    std::string mode;  ///< "continuous" or "discontinuous"
+    std::string mode;     ///< "continuous" or "discontinuous"
     int conductions = 0;  ///< how often the rectifier starts to conduct in one period
     std::vector<Figure> figures;
     double balance = 0;  ///< (input − output − Σ I²R − V_T0·I_avg)/input power; leakage energy of a flyback included

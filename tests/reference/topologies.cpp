@@ -9,7 +9,8 @@
 namespace reference {
 namespace {
 
-/// A bank of capacitors in parallel, beside a conductance, into which `feed` flows: its terminal voltage, and all rates.
+/// A bank of capacitors in parallel, beside a conductance, into which `feed` flows: its terminal voltage, and all
+/// rates.
 double bank(const std::vector<Capacitor>& branches, const double* v, double* dv, double feed, double conductance,
             std::array<double, kMostBranches>& currents, double& total) {
     const size_t n = branches.size();
@@ -141,8 +142,8 @@ struct Probe {
         w.v_r = a + w.v_out;
     }
 
-    // Winding 1 from input to a, switch from a to ground, C_s from a (+) to b, winding 2 from ground to b, rectifier from b
-    // to the output.
+    // Winding 1 from input to a, switch from a to ground, C_s from a (+) to b, winding 2 from ground to b, rectifier
+    // from b to the output.
     void sepic(Position p) {
         const double i1 = x[0], i2 = x[1];
         w.i1 = i1;
@@ -177,8 +178,8 @@ struct Probe {
         }
     }
 
-    // Winding 1 from input to a, switch from a to ground, C_s from a (+) to b, rectifier from b to ground, winding 2 from the
-    // negative output to b.
+    // Winding 1 from input to a, switch from a to ground, C_s from a (+) to b, rectifier from b to ground, winding 2
+    // from the negative output to b.
     void cuk(Position p) {
         const double i1 = x[0], i2 = x[1];
         w.i1 = i1;
@@ -211,8 +212,8 @@ struct Probe {
         }
     }
 
-    // Switch from input to a, winding 1 from a to ground, C_s from b (+) to a, rectifier from ground to b, winding 2 from b to
-    // the output.
+    // Switch from input to a, winding 1 from a to ground, C_s from b (+) to a, rectifier from ground to b, winding 2
+    // from b to the output.
     void zeta(Position p) {
         const double i1 = x[0], i2 = x[1];
         w.i1 = i1;
@@ -245,8 +246,8 @@ struct Probe {
         w.v_r = b;
     }
 
-    // Primary from input to the switch, switch to ground; secondary from ground through the rectifier to the output, wound so
-    // that it blocks while the switch is on.
+    // Primary from input to the switch, switch to ground; secondary from ground through the rectifier to the output,
+    // wound so that it blocks while the switch is on.
     void flyback(Position p) {
         const double n = c.n;
         if (c.k == 1) {  // no leakage: the magnetising current x[0] flows in one winding or the other
@@ -315,18 +316,33 @@ struct Probe {
 
 }  // namespace
 
-void probe(const Converter& c, const States& s, const Constants& u, Position position, const double* x, double* dx, Wave& w) {
+void probe(const Converter& c, const States& s, const Constants& u, Position position, const double* x, double* dx,
+           Wave& w) {
     for (int k = 0; k < s.count; ++k) dx[k] = 0;
     w = Wave{};
     Probe p{c, s, u, x, dx, w};
     switch (c.kind) {
-        case Kind::buck: p.buck(position); break;
-        case Kind::boost: p.boost(position); break;
-        case Kind::inverting: p.inverting(position); break;
-        case Kind::sepic: p.sepic(position); break;
-        case Kind::cuk: p.cuk(position); break;
-        case Kind::zeta: p.zeta(position); break;
-        case Kind::flyback: p.flyback(position); break;
+        case Kind::buck:
+            p.buck(position);
+            break;
+        case Kind::boost:
+            p.boost(position);
+            break;
+        case Kind::inverting:
+            p.inverting(position);
+            break;
+        case Kind::sepic:
+            p.sepic(position);
+            break;
+        case Kind::cuk:
+            p.cuk(position);
+            break;
+        case Kind::zeta:
+            p.zeta(position);
+            break;
+        case Kind::flyback:
+            p.flyback(position);
+            break;
     }
 }
 

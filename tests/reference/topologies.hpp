@@ -28,7 +28,9 @@ struct Wave {
 struct States {
     int cin = 3, cs = 3, co = 3, count = 3;
     explicit States(const Converter& c)
-        : cs(cin + static_cast<int>(c.cin.size())), co(cs + static_cast<int>(c.cs.size())), count(co + static_cast<int>(c.co.size())) {}
+        : cs(cin + static_cast<int>(c.cin.size())),
+          co(cs + static_cast<int>(c.cs.size())),
+          count(co + static_cast<int>(c.co.size())) {}
 };
 
 /// Constant currents that belong to the periodic state, not to the circuit.
@@ -38,7 +40,8 @@ struct Constants {
 };
 
 /// @param dx  rates of all states [A/s], [V/s]
-void probe(const Converter& c, const States& s, const Constants& u, Position position, const double* x, double* dx, Wave& w);
+void probe(const Converter& c, const States& s, const Constants& u, Position position, const double* x, double* dx,
+           Wave& w);
 
 /// What the turn-off of the switch does to the states at once: only leakage does anything.
 /// @returns the energy lost in it [J]
@@ -47,6 +50,8 @@ double turn_off(const Converter& c, double* x);
 /// What the stop of the rectifier leaves: winding currents that are exactly zero, or exactly opposite.
 void stop_rectifier(const Converter& c, double* x);
 
-[[nodiscard]] inline bool four_elements(Kind kind) { return kind == Kind::sepic || kind == Kind::cuk || kind == Kind::zeta; }
+[[nodiscard]] inline bool four_elements(Kind kind) {
+    return kind == Kind::sepic || kind == Kind::cuk || kind == Kind::zeta;
+}
 
 }  // namespace reference
