@@ -6,8 +6,12 @@
 #include <catch2/catch.hpp>
 #include <chrono>
 #include <cmath>
+#include <functional>
+#include <future>
 #include <limits>
+#include <memory>
 #include <sstream>
+#include <thread>
 
 #include "engine/network/steady_state.hpp"
 
@@ -392,9 +396,7 @@ TEST_CASE("switch and rectifier of a sepic see input plus output when ripple is 
 
 namespace {
 
-/// What became of it: "refused", "answered", or what is wrong.
-std::string outcome(const Drawn& d) {
-    const auto begin = std::chrono::steady_clock::now();
+std::string outcome_in_here(const Drawn& d) {
     std::string result;
     try {
         const auto s = solve(d.circuit, d.point);
@@ -405,8 +407,20 @@ std::string outcome(const Drawn& d) {
     } catch (const std::exception& other) {
         result = std::string("another exception: ") + other.what();
     }
-    if (std::chrono::steady_clock::now() - begin > std::chrono::seconds(5)) result += ", after more than 5 s";
     return result;
+}
+
+/// What became of it: "refused", "answered", or what is wrong. A solve that hangs is left behind in its thread, so that
+/// it fails its own case and not the whole run; after three of them no more are started.
+std::string outcome(const Drawn& d) {
+    static int left_behind = 0;
+    if (left_behind >= 3) return "not tried: three solves still run";
+    auto task = std::make_shared<std::packaged_task<std::string()>>([d] { return outcome_in_here(d); });
+    auto result = task->get_future();
+    std::thread([task] { (*task)(); }).detach();
+    if (result.wait_for(std::chrono::seconds(5)) == std::future_status::ready) return result.get();
+    ++left_behind;
+    return "no answer within 5 s";
 }
 
 Drawn ordinary(const Topology& topology) {
@@ -562,6 +576,17 @@ TEST_CASE("absurd values end in a sound answer or a sentence, never in a hang", 
         const auto result = outcome(d);
         CHECK((result == "answered" || result == "refused" ? std::string() : result) == "");
     }
+}
+
+TEST_CASE("ever lighter loads are answered, down to none at all", "[engine][network][bad]") {
+    for (const auto& topology : topologies())
+        for (const double load : {1e-2, 1e-3, 1e-4, 1e-5, 1e-6, 1e-7, 1e-8, 1e-9, 0.0}) {
+            Drawn d = ordinary(topology);
+            d.point.load_value = load;
+            INFO(say(d));
+            const auto result = outcome(d);
+            CHECK((result == "answered" || (load == 0 && result == "refused") ? std::string() : result) == "");
+        }
 }
 
 TEST_CASE("a load that no duty can carry leaves no output voltage, never a negative one", "[engine][network][bad]") {
