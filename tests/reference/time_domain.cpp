@@ -682,4 +682,26 @@ Solution integrate(const Converter& converter, double tolerance) {
     return measure(shooting);
 }
 
+int settle(const Converter& converter, const Solution& known, double accuracy, int most) {
+    Converter c = converter;
+    if (c.kind == Kind::flyback) c.L2 = c.L1 * c.n * c.n;
+    if (c.feed == Feed::mean) {
+        c.feed = Feed::stiff;
+        c.cin.clear();
+    }
+    Shooting shooting(c, 1e-9);
+    guess(shooting, known.duty, known["output_voltage_average"]);
+    shooting.run.duty = known.duty;
+    for (int k = 1; k <= most; ++k) {
+        const Vector before = shooting.x;
+        shooting.relax(1);
+        double moved = 0;
+        for (size_t j = 0; j < before.size(); ++j)
+            moved = std::max(
+                moved, std::abs(shooting.x[j] - before[j]) / (j < 3 ? shooting.current_scale : shooting.voltage_scale));
+        if (moved < accuracy) return k;
+    }
+    return most;
+}
+
 }  // namespace reference

@@ -61,6 +61,12 @@ struct Solution {
 /// @throws std::runtime_error where no periodic state is found
 [[nodiscard]] Solution integrate(const Converter& converter, double tolerance = 1e-13);
 
+/// Plain integration, without shooting and with the duty already known: from the ripple-free guess, period after
+/// period, until no state moves by more than `accuracy` (relative to the largest) in a period. A mean-only source is
+/// taken as stiff, since constant current in and out at a fixed duty never settles.
+/// @returns the number of periods run, at most `most`
+int settle(const Converter& converter, const Solution& known, double accuracy, int most = 100000);
+
 /// All inputs in one line, for failure messages.
 [[nodiscard]] std::string describe(const Converter& converter);
 
