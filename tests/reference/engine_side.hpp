@@ -3,7 +3,9 @@
 #pragma once
 #include <algorithm>
 #include <cmath>
+#include <iomanip>
 #include <map>
+#include <sstream>
 #include <string>
 #include <vector>
 
@@ -96,6 +98,27 @@ inline std::map<std::string, double> figures_of(const binwright::SteadyState& s)
     winding("secondary", s.secondary);
     winding("magnetising", s.magnetising);
     return f;
+}
+
+/// The figures that differ, one a line; empty when all agree. A difference counts relative to the larger of the figure
+/// itself and 1 % of the largest of its kind.
+inline std::string differences(const Solution& expected, const binwright::SteadyState& state, double tolerance) {
+    std::ostringstream off;
+    off << std::setprecision(12);
+    if (std::string(binwright::to_string(state.mode)) != expected.mode)
+        off << "\n  mode: engine " << binwright::to_string(state.mode) << ", in time " << expected.mode;
+    std::map<char, double> largest;
+    for (const auto& figure : expected.figures)
+        largest[figure.kind] = std::max(largest[figure.kind], std::abs(figure.value));
+    const auto got = figures_of(state);
+    for (const auto& figure : expected.figures) {
+        const auto found = got.find(figure.name);
+        const double value = found == got.end() ? NAN : found->second;
+        const double error = (value - figure.value) / std::max(std::abs(figure.value), 0.01 * largest[figure.kind]);
+        if (!(std::abs(error) <= tolerance))
+            off << "\n  " << figure.name << ": engine " << value << ", in time " << figure.value << ", error " << error;
+    }
+    return off.str();
 }
 
 }  // namespace reference
