@@ -54,7 +54,7 @@ struct SourceConfig {
 };
 
 struct WindingConfig {
-    double inductance = 0;
+    double inductance = 0;  ///< 0 = not given, as is a resistance of 0
     std::optional<double> tolerance;  ///< fraction
     double resistance = 0;
     std::optional<double> saturation_current, saturation_drop;
@@ -92,6 +92,7 @@ struct ElementConfig { std::optional<double> resistance, drop, capacitance; };
 struct SeatConfig {
     std::string reference;             ///< "Q1"
     std::vector<FittedConfig> fitted;  ///< one entry, or one a kind of a mixed bank
+    int count = 1;                     ///< in parallel, of what is typed in the file where `fitted` names nothing
     std::vector<Figure> figures;       ///< typed in the file: instead of, or on top of, a part (known = told)
     std::map<std::string, std::string> attributes;  ///< typed beside the figures: technology, arrangement …
     std::optional<ElementConfig> element;
@@ -101,12 +102,14 @@ struct SeatConfig {
     std::optional<Overshoot> overshoot;       ///< measured
     double warmer_by = 0;                     ///< [K]
     std::string charged_by;                   ///< condition for tantalum surge; empty = not said
+    std::vector<Lot> as_fitted;  ///< figures a saved file carries, one entry a kind, so that it means the same elsewhere
 };
 
 struct AcrossConfig {
     std::string name;
     std::string between;  ///< input | output | switch | rectifier | coupling
     std::vector<Figure> figures;
+    std::map<std::string, std::string> attributes;  ///< technology …
 };
 
 struct Converter {
@@ -142,6 +145,16 @@ struct Converter {
 /// @throws InputError when the key is unknown or the result is not a sound converter file
 [[nodiscard]] std::string change_converter_text(std::string_view text, const std::string& file, std::string_view key,
                                                 std::string_view value);
+
+/// The keys of a converter file, in the order of its tables, for listings and help. Figures go by their symbols instead.
+struct ConverterKey {
+    std::string table;    ///< "" | "operating" | "heatsink.*" | "seat.*.element" | "across[]" …
+    std::string key;
+    std::string takes;    ///< "a voltage such as 12 V, or a range", "limit | hiccup | latch" …
+    std::string meaning;
+    bool needed = false;  ///< its table may not be without it
+};
+[[nodiscard]] std::vector<ConverterKey> converter_keys();
 
 /// A commented, sound converter file of this topology to start from.
 struct NewConverter {
