@@ -54,12 +54,13 @@ class Filler {
         for (const Key& key : keys())
             if (key.table == pattern && key.needed && !item.find(key.key)) {
                 const std::string missing = dotted(path, std::string(key.key));
+                if (misspelt_.contains(missing)) continue;  // said already
                 if (path.empty())
                     fault(place, missing, "the file names no " + quote(key.key), takes_text(key));
                 else
                     fault(place, missing, "[" + path + "] gives no " + quote(key.key), takes_text(key));
             }
-        if (pattern.empty() && !item.find("operating"))
+        if (pattern.empty() && !item.find("operating") && !misspelt_.contains("operating"))
             fault(place, "operating", "the file has no table [operating]",
                   "a table [operating] with input_voltage, output_voltage, output_current, frequency and ambient");
     }
@@ -170,8 +171,9 @@ class Filler {
                 if (info.families & bit(family)) words.emplace_back(info.name);
         }
         const std::string near = nearest_word(member.key, words);
+        if (!near.empty()) misspelt_.insert(dotted(path, near));
         const bool is_table = member.value.kind == Item::Kind::table && !member.value.in_braces;
-        const std::string full = dotted(path, key_text(member.key));
+        const std::string full = dotted(path, member.key);
         std::string message;
         if (is_table) {
             message = "unknown table [" + full + "]";
@@ -392,6 +394,7 @@ class Filler {
     const Item& root_;
     bool whole_;
     Values values_;
+    std::set<std::string> misspelt_;  // keys that an unknown one was probably meant to be
 };
 
 }  // namespace
