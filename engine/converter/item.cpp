@@ -120,6 +120,8 @@ Fault syntax_fault(std::string_view line, std::string_view description, Place pl
     Fault fault{std::move(place), "", "", ""};
     if (has(description, "utf-8")) {
         fault.message = "the text is not UTF-8 here; save the file as UTF-8";
+    } else if (plain.empty() && has(description, "end-of-file")) {
+        fault.message = "the file ends inside a list, a table in braces or a text that was never closed";
     } else if (has(description, "cannot redefine existing table") ||
                (has(description, "redefine") && plain.starts_with('['))) {
         fault.message =

@@ -155,6 +155,18 @@ class Filler {
                            [](const Member& member) { return known("across[]", member.key, kAnyFamily); });
     }
 
+    // "switch" where the key is one of a switch's and stands in a seat of another family; else empty.
+    static std::string elsewhere(const std::string& pattern, const std::string& name, unsigned families) {
+        if (!pattern.starts_with("seat.*")) return {};
+        std::vector<std::string> owners;
+        for (const Family family : {Family::switch_, Family::rectifier, Family::capacitor}) {
+            const bool symbol = pattern == "seat.*.figures" && find_symbol(name, family);
+            if (!(families & bit(family)) && (symbol || known(pattern, name, bit(family))))
+                owners.emplace_back(to_string(family));
+        }
+        return listed(owners);
+    }
+
     void unknown(const Member& member, const std::string& pattern, const std::string& path, unsigned families,
                  const Where& where) {
         std::vector<std::string> words;
@@ -170,6 +182,9 @@ class Filler {
             for (const AttributeInfo& info : attributes())
                 if (info.families & bit(family)) words.emplace_back(info.name);
         }
+        if (const auto owner = elsewhere(pattern, member.key, families); !owner.empty())
+            return fault(member.place, dotted(path, member.key), named(path, member.key) + " belongs to a " + owner,
+                         "one of " + listed(words));
         const std::string near = nearest_word(member.key, words);
         if (!near.empty()) misspelt_.insert(dotted(path, near));
         const bool is_table = member.value.kind == Item::Kind::table && !member.value.in_braces;
