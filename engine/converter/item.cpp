@@ -2,11 +2,12 @@
 #include "engine/converter/item.hpp"
 
 #include <fmt/format.h>
-#include <toml++/toml.h>
 
 #include <algorithm>
 #include <cctype>
 #include <utility>
+
+#include "engine/toml.hpp"
 
 namespace binwright {
 namespace {
@@ -185,6 +186,58 @@ bool too_deep(std::string_view text) {
     return false;
 }
 
+// TOML has no letter beyond ASCII outside quotes and comments, and the parser (3.3) is undefined where it meets one
+// there. Each becomes one `$`, which stands nowhere in TOML either: it is refused at the same place. `unsafe` is set
+// where the same would happen inside a text: on the line after a `\` that ends a line of a long text.
+std::string plain_outside_quotes(std::string_view text, bool& unsafe) {
+    std::string out;
+    out.reserve(text.size());
+    unsafe = false;
+    std::size_t k = 0;
+    const auto sequence = [&](std::size_t at) -> std::size_t {  // bytes of a well-formed letter beyond ASCII, else 0
+        const auto lead = static_cast<unsigned char>(text[at]);
+        const std::size_t length = lead >= 0xF0 ? 4 : lead >= 0xE0 ? 3 : lead >= 0xC0 ? 2 : 0;
+        for (std::size_t j = 1; j < length; ++j)
+            if (at + j >= text.size() || (static_cast<unsigned char>(text[at + j]) & 0xC0) != 0x80) return 0;
+        return length;
+    };
+    while (k < text.size()) {
+        const char c = text[k];
+        std::size_t end = k + 1;
+        if (c == '#') {
+            end = std::min(text.find('\n', k), text.size());
+        } else if ((c == '"' || c == '\'') && (k == 0 || has(" \t\r\n=,[{.", text.substr(k - 1, 1)))) {
+            const std::string mark(3, c);
+            const bool is_long = text.substr(k, 3) == mark;
+            end = k + (is_long ? 3 : 1);
+            while (end < text.size()) {
+                if (c == '"' && text[end] == '\\') {
+                    const auto next = text.find_first_not_of(" \t\r\n", end + 1);
+                    if (is_long && next != std::string_view::npos && next > end + 1 && (text[next] & 0x80) != 0)
+                        unsafe = true;
+                    end += 2;
+                } else if (is_long ? text.substr(end, 3) == mark : text[end] == c) {
+                    end += is_long ? 3 : 1;
+                    for (int extra = 0; is_long && extra < 2 && end < text.size() && text[end] == c; ++extra) ++end;
+                    break;
+                } else if (!is_long && text[end] == '\n') {
+                    break;
+                } else {
+                    ++end;
+                }
+            }
+            end = std::min(end, text.size());
+        } else if (const auto length = sequence(k); length > 0) {
+            out += '$';
+            k += length;
+            continue;
+        }
+        out += text.substr(k, end - k);
+        k = end;
+    }
+    return out;
+}
+
 }  // namespace
 
 const Item* Item::find(std::string_view key) const {
@@ -219,7 +272,18 @@ ItemText read_items(std::string_view text, const std::string& file, std::vector<
     const Reader reader(body, file);
     for (int round = 0; round < kMostSyntaxFaults; ++round) {
         try {
-            const toml::table table = toml::parse(std::string_view(readable));
+            bool unsafe = false;
+            const std::string plain = plain_outside_quotes(readable, unsafe);
+            if (unsafe) {
+                faults.push_back({{file, 0, 0},
+                                  "",
+                                  "a text goes on after a \\ at the end of a line with a letter beyond ASCII; "
+                                  "write it in one line",
+                                  ""});
+                out.whole = false;
+                break;
+            }
+            const toml::table table = toml::parse(std::string_view(plain));
             out.root = reader.item(table);
             break;
         } catch (const toml::parse_error& error) {
@@ -261,7 +325,9 @@ Item typed_item(std::string_view value, const Place& place) {
          has("+-", plain.substr(0, 1)))) {
         try {
             const std::string line = "x=" + std::string(plain);
-            const toml::table table = toml::parse(std::string_view(line));
+            bool unsafe = false;
+            const std::string masked = plain_outside_quotes(line, unsafe);
+            const toml::table table = toml::parse(std::string_view(unsafe ? "" : masked));
             const Reader reader(line, place.file);
             if (table.size() == 1) out = reader.item(*table.get("x"));
         } catch (const toml::parse_error&) {

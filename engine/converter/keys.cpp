@@ -212,7 +212,8 @@ KeyPath find_key(std::string_view dotted, const Place& place, const std::vector<
                 parts.insert(parts.begin(), "operating");
                 break;
             }
-    const auto seat = parts.size() >= 3 && parts[0] == "seat" ? find_seat(parts[1]) : std::nullopt;
+    std::optional<Seat> seat;
+    if (parts.size() >= 3 && parts[0] == "seat") seat = find_seat(parts[1]);
     if (!parts.empty() && (parts[0] != "seat" || seat)) {
         for (const Key& key : kKeys)
             if (table_fits(key.table, parts, parts.size() - 1) && key.key == parts.back() &&
