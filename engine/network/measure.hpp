@@ -59,6 +59,16 @@ class Measure {
         threshold_ = threshold;
     }
 
+    /// What counts as nothing: the largest current at any switching instant. Call before the first add.
+    void look_at(const typename Period<N>::Piece& piece) {
+        const Column<N> end = piece.flow * piece.start;
+        for (const int o : kWatched)
+            for (const Column<N>* z : {&piece.start, &end}) {
+                const double current = dot<N>(rows_[piece.configuration][o].a, *z);
+                if (current * current > scale_) scale_ = current * current;
+            }
+    }
+
     /// Adds one piece; `profile` collects the reverse voltage with weights.
     void add(const typename Period<N>::Piece& piece, std::vector<WeightedVoltage>& profile) {
         configuration_ = piece.configuration;
@@ -69,8 +79,12 @@ class Measure {
     [[nodiscard]] const Column<N>& row(int configuration, int output) const { return rows_[configuration][output]; }
 
   private:
+    static constexpr int kWatched[] = {switch_current, rectifier_current, input_bank_current, coupling_bank_current,
+                                       output_bank_current, primary_current};
+    static constexpr int kMostLeaves = 20000;  ///< of the halving: a bound on the time of hopelessly fast ringing
     const Period<N>& period_;
-    int outputs_, configuration_ = 0;
+    int outputs_, configuration_ = 0, leaves_ = 0;
+    double scale_ = 0;
     double threshold_ = 0;
     Column<N> rows_[4][kMostOutputs];
     std::vector<WeightedVoltage>* profile_ = nullptr;
@@ -85,7 +99,7 @@ class Measure {
         for (int k = 1; k <= kPanels; ++k) z_[k] = E * z_[k - 1];
         for (int o = 0; o < outputs_; ++o)
             for (int k = 0; k <= kPanels; ++k) y_[o][k] = dot<N>(rows_[configuration_][o].a, z_[k]);
-        if (depth < 44 && !resolved()) {
+        if (depth < 44 && leaves_ < kMostLeaves && !resolved(duration)) {
             const Column<N> middle = z_[kPanels / 2];
             stack(start, 0.5 * duration, depth + 1);
             stack(middle, 0.5 * duration, depth + 1);
@@ -94,41 +108,35 @@ class Measure {
         gather(duration);
     }
 
-    [[nodiscard]] bool resolved() const {
+    /// Whether both quadratures of every squared current agree, branches of mixed banks included.
+    [[nodiscard]] bool resolved(double duration) const {
         const auto& fine = romberg(false);
         const auto& coarse = romberg(true);
+        double sums[kMostOutputs][2];
         double largest = 0;
-        constexpr int watched[] = {switch_current, rectifier_current, input_bank_current, coupling_bank_current,
-                                   output_bank_current, primary_current};
-        double a[6], b[6];
         int n = 0;
-        for (const int o : watched) {
-            double sum_fine = 0, sum_coarse = 0;
+        const auto integrate = [&](int o) {
+            double a = 0, b = 0;
             for (int k = 0; k <= kPanels; ++k) {
                 const double square = y_[o][k] * y_[o][k];
-                sum_fine += fine[k] * square;
-                sum_coarse += coarse[k] * square;
+                a += fine[k] * square;
+                b += coarse[k] * square;
             }
-            a[n] = sum_fine;
-            b[n++] = sum_coarse;
-            largest = std::max(largest, std::abs(sum_fine));
-        }
+            sums[n][0] = a;
+            sums[n++][1] = b;
+            largest = std::max(largest, std::abs(a));
+        };
+        for (const int o : kWatched) integrate(o);
+        for (int o = branches; o < outputs_; ++o) integrate(o);
         for (int k = 0; k < n; ++k)
-            if (!(std::abs(a[k] - b[k]) <= 1e-8 * (std::abs(a[k]) + 1e-4 * largest))) return false;
-        // Branches of mixed banks exchange fast currents of their own.
-        for (int o = branches; o < outputs_; ++o) {
-            double sum_fine = 0, sum_coarse = 0;
-            for (int k = 0; k <= kPanels; ++k) {
-                const double square = y_[o][k] * y_[o][k];
-                sum_fine += fine[k] * square;
-                sum_coarse += coarse[k] * square;
-            }
-            if (!(std::abs(sum_fine - sum_coarse) <= 1e-8 * (std::abs(sum_fine) + 1e-4 * largest))) return false;
-        }
+            if (!(std::abs(sums[k][0] - sums[k][1]) <=
+                  1e-8 * (std::abs(sums[k][0]) + 1e-4 * largest) + 1e-12 * scale_ / std::max(duration, 1e-12)))
+                return false;
         return true;
     }
 
     void gather(double duration) {
+        ++leaves_;
         const auto& weights = romberg(false);
         const bool conducts = configuration_ & 2, on = configuration_ & 1;
         for (int o = 0; o < outputs_; ++o) {

@@ -167,6 +167,8 @@ class Period {
             start = trial;
             duty = trial_duty;
             if (step < 1e-13 || (step < 1e-9 && step >= 0.25 * previous)) ++settled;
+            // Near no load a period changes the states by little more than rounding, and so the steps stop shrinking early.
+            if (step < 1e-4 && step >= 0.5 * previous && iteration > 4) ++settled;
             if (settled || step < 3e-10) {  // quadratic: the next step would be below rounding
                 if (!walk(start, duty)) return false;
                 find_slope();

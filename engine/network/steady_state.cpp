@@ -54,6 +54,7 @@ void check_circuit(const Circuit& circuit) {
     resistance("the source resistance", circuit.source_resistance);
     require(circuit.source_inductance >= 0 && circuit.source_inductance < 1e6, "the source inductance",
             circuit.source_inductance, "0 H or more");
+    require(circuit.minimum_on_time >= 0, "the shortest on-time", circuit.minimum_on_time, "0 s or more");
     check_bank("input capacitor", circuit.input);
     check_bank("coupling capacitor", circuit.coupling_capacitor);
     check_bank("output capacitor", circuit.output);
@@ -63,7 +64,6 @@ void check_circuit(const Circuit& circuit) {
     if (circuit.source == SourceKind::impedance && circuit.source_inductance > 0 && circuit.input.empty())
         throw OutsideModel("there is no input capacitor behind the source's inductance; the network needs one");
     require(circuit.maximum_duty > 0 && circuit.maximum_duty <= 1, "the duty limit", circuit.maximum_duty, "0 < D ≤ 1");
-    require(circuit.minimum_on_time >= 0, "the shortest on-time", circuit.minimum_on_time, "0 s or more");
 }
 
 void check_point(const OperatingPoint& point) {
@@ -108,6 +108,7 @@ class Core {
         fill(result);
         if (idle) {
             result.mode = Mode::idle;
+            result.duty = 0;
             result.warnings.push_back("no load: computed as the limit of a vanishing load");
         }
         warm_ = true;
@@ -204,7 +205,9 @@ class Core {
         }
         if (!period_.settle(best_duty)) fail(best_duty);
         result.reached = false;
-        result.highest_output = period_.mean_output();
+        result.highest_output = std::max(0.0, period_.mean_output());
+        if (period_.mean_output() < 0)
+            result.warnings.push_back("no duty carries this load: a constant current pulls the model's output below zero");
     }
 
     void refine(double wanted, double low, double at_low, double high, double at_high) {
@@ -304,6 +307,7 @@ class Core {
         result.intervals.clear();
         const double period = 1 / point_->frequency;
         double conduction = 0, idle = 0;
+        for (int k = 0; k < period_.count; ++k) measure.look_at(period_.pieces[k]);
         for (int k = 0; k < period_.count; ++k) {
             const auto& piece = period_.pieces[k];
             measure.add(piece, result.reverse_profile);
@@ -472,6 +476,8 @@ struct Solver::Inside {
     void solve(const Circuit& wanted, const OperatingPoint& at) {
         check_circuit(wanted);
         check_point(at);
+        require(wanted.minimum_on_time * at.frequency < 1, "the shortest on-time", wanted.minimum_on_time,
+                "less than one switching period");
         const double load_conductance = at.load == LoadKind::resistance ? 1 / at.load_value : 0;
         const int before = equations.states;
         if (!same_network(wanted, circuit) || load_conductance != conductance) {
