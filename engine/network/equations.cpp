@@ -371,6 +371,7 @@ void derive(const Circuit& circuit, double load_conductance, StateEquations& equ
     const Parts parts = sort_branches(circuit);
     const int winding_states = static_cast<int>(parts.inductors.size());
     equations.states = winding_states + static_cast<int>(parts.capacitors.size());
+    equations.windings = winding_states;
     equations.input_bank_idle = parts.stiff;
     equations.bank_branches.clear();
     int output = Output::branches;

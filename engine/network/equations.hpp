@@ -46,6 +46,7 @@ struct Configuration {
 
 struct StateEquations {
     int states = 0;
+    int windings = 0;  ///< the first of the states are currents
     int outputs = 0;
     std::array<Configuration, 4> configuration;  ///< index: switch on + 2·(rectifier on)
     std::array<double, kMostStates> weight{};    ///< √L or √C: scaled states have the unit √J

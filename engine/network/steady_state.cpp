@@ -157,7 +157,36 @@ class Core {
             period_.start = start;
             period_.duty = duty;
         }
+        const double light = 1e-4 * wanted / (circuit_->primary.inductance * point_->frequency);
+        if (point_->load == LoadKind::resistance || load_ >= light || !approach(wanted, light, least, most, result))
+            search(wanted, least, most, result);
+    }
+
+    /// A light load from a heavier one: in discontinuous operation the duty follows the root of the load and all currents
+    /// at turn-on the load itself. @returns false when that leads nowhere
+    bool approach(double wanted, double light, double least, double most, SteadyState& result) {
+        const double target = load_;
+        load_ = light;
+        build();
         search(wanted, least, most, result);
+        bool found = result.reached;
+        while (found && load_ > target) {
+            const double ratio = std::max(0.1, target / load_);
+            load_ = ratio > 0.1 ? target : load_ * ratio;
+            build();
+            for (int k = 0; k < equations_->windings; ++k) period_.start[k] *= ratio;
+            if (period_.feed >= 0) period_.start[period_.feed] *= ratio;
+            period_.duty *= std::sqrt(ratio);
+            found = period_.shoot(wanted, 30) && period_.duty >= least;
+        }
+        load_ = target;
+        if (!found) {
+            build();
+            result.reached = true;
+            result.highest_output = 0;
+            result.warnings.clear();
+        }
+        return found;
     }
 
     /// The lowest duty at which the mean output is the wanted one, from nothing.
