@@ -311,22 +311,32 @@ class Core {
             build();
             return amperes * output_at(point_->duty) - watts;
         };
-        double low = 0, high = watts / point_->input_voltage * 1e-3, at_high = excess(high);
-        double best = at_high;
+        double low = watts / point_->input_voltage * 1e-3, at_low = excess(low);
+        if (at_low >= 0)
+            throw OutsideModel(fmt::format(
+                "at a duty of {:.4g} % the converter delivers more than {:.4g} W into any light load: with a load of constant "
+                "power the output would rise without end",
+                100 * point_->duty, watts));
+        double high = low, at_high = at_low, best = at_low;
         for (int k = 0; k < 80 && !(at_high >= 0); ++k) {
-            low = high;
+            if (std::isfinite(at_high)) low = high, at_low = at_high;
             high *= 1.25;
             at_high = excess(high);
-            best = std::max(best, at_high);
+            if (at_high > best || !std::isfinite(best)) best = at_high;
         }
-        if (!(at_high >= 0))
+        if (!(at_high >= 0) || !(at_low < 0))
             throw OutsideModel(fmt::format("at a duty of {:.4g} % the converter delivers at most {:.4g} W; the load wants {:.4g} W",
                                            100 * point_->duty, best + watts, watts));
         std::uintmax_t steps = 100;
-        const double at_low = low > 0 ? excess(low) : -watts;
-        const auto bracket = boost::math::tools::toms748_solve(excess, low, high, at_low, at_high,
-                                                               boost::math::tools::eps_tolerance<double>(48), steps);
-        excess(0.5 * (bracket.first + bracket.second));
+        bool sound = true;
+        const auto bracket = boost::math::tools::toms748_solve(
+            [&](double amperes) {
+                const double value = excess(amperes);
+                sound = sound && std::isfinite(value);
+                return sound ? value : 0.0;
+            },
+            low, high, at_low, at_high, boost::math::tools::eps_tolerance<double>(48), steps);
+        if (!sound || !std::isfinite(excess(0.5 * (bracket.first + bracket.second)))) fail(point_->duty);
     }
 
     void fill(SteadyState& result) {
