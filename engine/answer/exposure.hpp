@@ -32,9 +32,6 @@ struct Setup {
 /// The same setup with one seat's parts replaced (for ranking).
 [[nodiscard]] Setup with_fitted(const Setup& setup, Seat seat, std::vector<Fitted> fitted);
 
-/// Which end of every figure's spread is computed with. Aged pulled parts are part of the worst end.
-enum class End { best, typical, worst };
-
 struct Term {
     std::string name;  ///< "input", "output", "drop", "ripple", "overshoot" …
     double value;

@@ -63,6 +63,12 @@ struct Spread {
     friend bool operator==(const Spread&, const Spread&) = default;
 };
 
+/// Which end of every figure's spread is computed with. Ageing of pulled parts belongs to the worst end.
+enum class End { best, typical, worst };
+[[nodiscard]] constexpr double at_end(const Spread& spread, End end) {
+    return end == End::best ? spread.best : end == End::worst ? spread.worst : spread.typical;
+}
+
 struct Figure {
     Symbol symbol{};
     Spread value;

@@ -1,0 +1,168 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+#include "engine/loss/rectifier_loss.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <map>
+
+#include "engine/loss/figures.hpp"
+
+namespace binwright {
+namespace {
+
+constexpr double kRoom = kCelsiusZero + 25;
+
+struct Line {
+    double threshold, resistance;  ///< of one leg
+};
+
+void read_forward(RectifierModel& model, const Part& part, End end, double legs) {
+    const std::vector<const Figure*> figures = figures_of(part, Symbol::V_F);
+    if (figures.empty()) {
+        model.missing.push_back("V_F");
+        return;
+    }
+    std::map<double, std::vector<std::pair<double, double>>> by_temperature;  // T → (I of one leg, V_F)
+    const auto rated = end_value(part, Symbol::I_FAV, End::typical);
+    for (const Figure* figure : figures) {
+        double current = figure->at.current.value_or(rated.value_or(1.0));
+        if (!figure->at.current) model.rests_on.push_back("V_F taken at the rated average current, no current stated");
+        if (figure->both_legs) current /= 2;
+        by_temperature[temperature_of(*figure, kRoom)].emplace_back(current, at_end(figure->value, end));
+    }
+    const double share = model.pn ? 0.8 : 0.7;
+    std::map<double, Line> lines;
+    bool guessed = false;
+    for (auto& [temperature, points] : by_temperature) {
+        std::sort(points.begin(), points.end());
+        Line line{};
+        if (points.size() > 1 && points.back().first > points.front().first) {
+            line.resistance = std::max(0.0, (points.back().second - points.front().second) / (points.back().first - points.front().first));
+            line.threshold = points.back().second - line.resistance * points.back().first;
+        } else {
+            line.threshold = share * points.front().second;
+            line.resistance = (1 - share) * points.front().second / points.front().first;
+            guessed = true;
+        }
+        lines[temperature] = line;
+    }
+    if (guessed)
+        model.rests_on.push_back(fmt::format("V_T0 taken as {:.0f} % of V_F where one current is on record", 100 * share));
+    const auto first = lines.begin(), last = std::prev(lines.end());
+    model.reference = first->first;
+    model.threshold = first->second.threshold;
+    model.resistance = first->second.resistance / legs;
+    if (last != first) {
+        const double span = last->first - first->first;
+        model.threshold_slope = (last->second.threshold - first->second.threshold) / span;
+        model.resistance_slope = (last->second.resistance - first->second.resistance) / span / legs;
+    } else {
+        model.threshold_slope = model.pn ? -2e-3 : -1.2e-3;
+        model.rests_on.push_back(fmt::format("V_F taken to fall {:.1f} mV/K, as of its kind", -1e3 * model.threshold_slope));
+    }
+}
+
+void read_leakage(RectifierModel& model, const Part& part, End end, double legs) {
+    const std::vector<const Figure*> figures = figures_of(part, Symbol::I_R);
+    if (figures.empty()) {
+        model.missing.push_back("I_R");
+        return;
+    }
+    // The hottest figure is nearest to where leakage matters.
+    const Figure* main = figures.front();
+    for (const Figure* figure : figures)
+        if (temperature_of(*figure, kRoom) > temperature_of(*main, kRoom)) main = figure;
+    const auto amperes = [&](const Figure& figure) { return at_end(figure.value, end) * (figure.both_legs ? legs / 2 : legs); };
+    model.leakage = amperes(*main);
+    model.leakage_temperature = temperature_of(*main, kRoom);
+    const auto rated = end_value(part, Symbol::V_RRM, End::typical);
+    const auto volts = [&](const Figure& figure) { return figure.at.voltage ? figure.at.voltage : rated; };
+    model.leakage_voltage = volts(*main);
+    bool growth_known = false;
+    for (const Figure* figure : figures) {
+        if (figure == main || !(amperes(*figure) > 0) || !(*model.leakage > 0)) continue;
+        const double span = model.leakage_temperature - temperature_of(*figure, kRoom);
+        if (span > 15 && volts(*figure) == volts(*main) && !growth_known) {
+            model.leakage_growth = std::log(*model.leakage / amperes(*figure)) / span;
+            growth_known = true;
+        } else if (std::abs(span) < 1 && volts(*figure) && volts(*main) && *volts(*figure) != *volts(*main)) {
+            model.leakage_exponent = std::log(*model.leakage / amperes(*figure)) / std::log(*volts(*main) / *volts(*figure));
+        }
+    }
+    if (!growth_known) model.rests_on.push_back("leakage taken to grow with c = 0.055/K (one temperature on record)");
+}
+
+}  // namespace
+
+RectifierModel rectifier_model(const Part& part, int count, End end) {
+    RectifierModel model;
+    const std::string_view arrangement = attribute(part, "arrangement");
+    const bool dual = arrangement == "common cathode" || arrangement == "common anode";
+    const std::string_view used = attribute(part, "legs_used");
+    const int legs_each = dual && used != "1" ? 2 : 1;
+    model.legs = legs_each * count;
+    const std::string_view technology = attribute(part, "technology");
+    model.pn = !technology.empty() && technology != "schottky";
+    const double legs = model.legs;
+    read_forward(model, part, end, legs);
+    read_leakage(model, part, end, legs);
+    const std::vector<const Figure*> capacitances = figures_of(part, Symbol::C_j);
+    if (!capacitances.empty()) {
+        model.capacitance = at_end(capacitances.front()->value, end) * (capacitances.front()->both_legs ? legs / 2 : legs);
+        model.capacitance_at = capacitances.front()->at.voltage.value_or(*info(Symbol::C_j).usual.voltage);
+    } else {
+        model.missing.push_back("C_j");
+    }
+    if (model.pn || technology.empty()) {
+        if (const auto charge = end_value(part, Symbol::Q_rr, end))
+            model.recovery_charge = *charge * legs;
+        else if (const auto time = end_value(part, Symbol::t_rr, end)) {
+            // Charge of a triangle of t_rr with half the rated current as its peak.
+            model.recovery_charge = 0.25 * *time * end_value(part, Symbol::I_FAV, End::typical).value_or(1.0) * legs;
+            model.rests_on.push_back("Q_rr estimated from t_rr and half of the rated current");
+        } else {
+            model.missing.push_back("Q_rr");
+        }
+    }
+    return model;
+}
+
+double forward_threshold(const RectifierModel& model, double junction) {
+    return std::max(0.05, model.threshold.value_or(0) + model.threshold_slope * (junction - model.reference));
+}
+
+double forward_resistance(const RectifierModel& model, double junction) {
+    return std::max(0.0, model.resistance + model.resistance_slope * (junction - model.reference));
+}
+
+double leakage(const RectifierModel& model, double voltage, double junction) {
+    if (!model.leakage || !(voltage > 0)) return 0;
+    const double hot = std::exp(std::min(60.0, model.leakage_growth * (junction - model.leakage_temperature)));
+    const double bias = model.leakage_voltage && model.leakage_exponent != 0 ? std::pow(voltage / *model.leakage_voltage, model.leakage_exponent) : 1.0;
+    return *model.leakage * hot * bias;
+}
+
+RectifierLoss rectifier_loss(const RectifierModel& model, const RectifierStress& stress, const std::vector<WeightedVoltage>& reverse_profile,
+                             double frequency, double junction) {
+    if (!(junction > 0)) throw OutsideModel(fmt::format("the junction temperature is {:.4g} K; it must be above 0 K", junction));
+    RectifierLoss loss;
+    if (model.threshold) {
+        loss.forward = forward_threshold(model, junction) * stress.current_average +
+                       forward_resistance(model, junction) * stress.current_rms * stress.current_rms;
+        loss.slope = model.threshold_slope * stress.current_average + model.resistance_slope * stress.current_rms * stress.current_rms;
+    }
+    for (const WeightedVoltage& stretch : reverse_profile) loss.reverse += stretch.weight * stretch.voltage * leakage(model, stretch.voltage, junction);
+    loss.reverse_slope = model.leakage_growth * loss.reverse;
+    loss.slope += loss.reverse_slope;
+    if (model.capacitance) {
+        const double v = stress.voltage_turn_on;
+        loss.junction = frequency * std::max(0.0, v * capacitance_charge(*model.capacitance, *model.capacitance_at, v) -
+                                                      capacitance_energy(*model.capacitance, *model.capacitance_at, v));
+    }
+    if (model.recovery_charge && stress.current_turn_off > 0) loss.recovery = *model.recovery_charge * stress.voltage_turn_on * frequency;
+    return loss;
+}
+
+}  // namespace binwright
