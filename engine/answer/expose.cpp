@@ -1,0 +1,272 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// The worst over the operating range: a grid over every dimension that has a length, then a search around the worst point of
+// each stress, since some stresses peak inside the range (a middle duty, the border of two modes, a resonance).
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <map>
+#include <set>
+
+#include "engine/answer/exposure.hpp"
+#include "engine/answer/operate.hpp"
+#include "engine/answer/sight.hpp"
+
+namespace binwright {
+namespace {
+
+/// A point of the range in shares 0 … 1 of each dimension, and which tolerance variant.
+struct Spot {
+    std::array<double, 5> share{};
+    int variant = 0;
+    friend bool operator<(const Spot& a, const Spot& b) {
+        return a.variant != b.variant ? a.variant < b.variant : a.share < b.share;
+    }
+};
+
+class Search {
+  public:
+    Search(const Setup& setup, End end, const Allowances& allowances, const Progress& progress)
+        : setup_(setup), progress_(progress), range_(widened(setup.converter.operating)) {
+        make_variants(end, allowances);
+        sight_ = sight_of(benches_.front());
+        worst_.assign(sight_.keys.size(), {});
+        solvers_ = std::vector<Solver>(benches_.size());
+    }
+
+    Exposure run() {
+        std::vector<Spot> grid = make_grid();
+        std::size_t done = 0;
+        for (const Spot& spot : grid) {
+            visit(spot);
+            report(0.5 * static_cast<double>(++done) / static_cast<double>(grid.size()));
+        }
+        for (std::size_t k = 0; k < sight_.keys.size(); ++k) {
+            refine(k);
+            report(0.5 + 0.5 * static_cast<double>(k + 1) / static_cast<double>(sight_.keys.size()));
+        }
+        return collect();
+    }
+
+  private:
+    struct Worst {
+        bool any = false;
+        double value = 0;
+        Spot spot;
+    };
+    const Setup& setup_;
+    const Progress& progress_;
+    OperatingRange range_;
+    std::vector<Bench> benches_;
+    std::vector<Solver> solvers_;
+    Sight sight_;
+    std::vector<Worst> worst_;
+    std::map<Spot, std::vector<double>> seen_;
+    std::vector<std::string> warnings_;
+    int points_ = 0, reached_ = 0;
+    std::optional<Spot> unreached_;
+    double most_loss_ = -1;
+    Spot hottest_;
+    bool runaway_ = false;
+
+    static OperatingRange widened(OperatingRange range) {
+        if (range.output_tolerance) {
+            range.output_voltage.lowest *= 1 - *range.output_tolerance;
+            range.output_voltage.highest *= 1 + *range.output_tolerance;
+        }
+        return range;
+    }
+
+    /// Both ends of the tolerance of inductance, and of the coupling.
+    void make_variants(End end, const Allowances& allowances) {
+        const auto& winding = setup_.converter.winding;
+        const double first = winding.primary ? winding.primary->tolerance.value_or(0) : 0;
+        const double second = winding.secondary ? winding.secondary->tolerance.value_or(0) : first;
+        std::vector<double> signs = first > 0 || second > 0 ? std::vector<double>{-1, 1} : std::vector<double>{0};
+        std::vector<std::optional<double>> couplings = {std::nullopt};
+        if (winding.coupling && !winding.coupling->single()) couplings = {winding.coupling->lowest, winding.coupling->highest};
+        if (winding.leakage && !winding.leakage->single() && winding.primary) {
+            couplings.clear();
+            for (const double leakage : {winding.leakage->lowest, winding.leakage->highest})
+                couplings.push_back(std::sqrt(std::max(0.0, 1 - leakage / winding.primary->inductance)));
+        }
+        Bench base = bench_of(setup_, end, allowances);
+        for (const double sign : signs)
+            for (const auto& coupling : couplings) {
+                Bench bench = base;
+                bench.primary_factor = 1 + sign * first;
+                bench.secondary_factor = 1 + sign * second;
+                bench.coupling = coupling;
+                benches_.push_back(std::move(bench));
+            }
+    }
+
+    [[nodiscard]] Range dimension(int k) const { return range_.get(kOperating[k].quantity); }
+
+    /// Currents are searched in logarithm where the range is wide: light load is where modes change.
+    [[nodiscard]] bool logarithmic(int k) const {
+        const Range range = dimension(k);
+        return kOperating[k].quantity == OperatingQuantity::output_current && range.lowest > 0 && range.highest > 4 * range.lowest;
+    }
+
+    [[nodiscard]] At at(const Spot& spot) const {
+        At at;
+        for (int k = 0; k < 5; ++k) {
+            const Range range = dimension(k);
+            const double s = spot.share[k];
+            double value = range.lowest + s * (range.highest - range.lowest);
+            if (s == 1) value = range.highest;
+            if (logarithmic(k) && s > 0 && s < 1) value = range.lowest * std::pow(range.highest / range.lowest, s);
+            at.set(kOperating[k].quantity, value);
+        }
+        const OperatingRange& given = setup_.converter.operating;
+        if (given.load == LoadKind::resistance)  // fixed at the top of both ranges
+            at.output_current = at.output_voltage * given.output_current.highest / given.output_voltage.highest;
+        if (given.load == LoadKind::power) at.output_current = given.output_voltage.highest * given.output_current.highest / at.output_voltage;
+        return at;
+    }
+
+    [[nodiscard]] std::vector<double> marks(int k) const {
+        if (dimension(k).single()) return {0};
+        switch (kOperating[k].quantity) {
+            case OperatingQuantity::input_voltage:
+            case OperatingQuantity::output_voltage: return {0, 0.5, 1};
+            case OperatingQuantity::output_current:
+                if (setup_.converter.operating.load != LoadKind::current) return {1};
+                return {0, 0.5, 0.8, 1};
+            default: return {0, 1};
+        }
+    }
+
+    std::vector<Spot> make_grid() const {
+        std::vector<Spot> grid;
+        for (int variant = 0; variant < static_cast<int>(benches_.size()); ++variant)
+            for (const double a : marks(0))
+                for (const double b : marks(1))
+                    for (const double c : marks(2))
+                        for (const double d : marks(3))
+                            for (const double e : marks(4)) {
+                                // The cold end at corners only: temperatures peak at the hot one, blocking voltages may not.
+                                if (e < 1 && !dimension(4).single() && (a == 0.5 || b == 0.5 || (c > 0 && c < 1))) continue;
+                                grid.push_back({{a, b, c, d, e}, variant});
+                            }
+        return grid;
+    }
+
+    void report(double share) const {
+        if (progress_ && !progress_(share)) throw Stopped();
+    }
+
+    const std::vector<double>& visit(const Spot& spot) {
+        const auto known = seen_.find(spot);
+        if (known != seen_.end()) return known->second;
+        const Bench& bench = benches_[spot.variant];
+        const At where = at(spot);
+        const Operated operated = operate(bench, where, solvers_[spot.variant]);
+        ++points_;
+        if (operated.state.reached) ++reached_;
+        else if (!unreached_) unreached_ = spot;
+        if (!operated.stable) runaway_ = true;
+        double loss = 0;
+        for (const Loss& one : operated.losses) loss += one.power;
+        if (operated.stable && loss > most_loss_) most_loss_ = loss, hottest_ = spot;
+        for (const std::string& warning : operated.state.warnings)
+            if (std::find(warnings_.begin(), warnings_.end(), warning) == warnings_.end() && warnings_.size() < 8) warnings_.push_back(warning);
+        std::vector<double> values = look(bench, sight_, where, operated);
+        for (std::size_t k = 0; k < values.size(); ++k) {
+            if (!std::isfinite(values[k])) continue;
+            Worst& worst = worst_[k];
+            const bool worse = !worst.any || (sight_.keys[k].lowest_is_worst() ? values[k] < worst.value : values[k] > worst.value);
+            if (worse) worst = {true, values[k], spot};
+        }
+        return seen_.emplace(spot, std::move(values)).first->second;
+    }
+
+    /// Compass search with halved steps from the worst grid point of one stress.
+    void refine(std::size_t k) {
+        if (!worst_[k].any) return;
+        double step = 0.25;
+        for (int round = 0; round < 8 && step > 0.002; ++round) {
+            const Spot from = worst_[k].spot;
+            for (int d = 0; d < 4; ++d) {
+                if (dimension(d).single()) continue;
+                for (const double sign : {-1.0, 1.0}) {
+                    Spot to = from;
+                    to.share[d] = std::clamp(from.share[d] + sign * step, 0.0, 1.0);
+                    if (to.share[d] != from.share[d]) visit(to);
+                }
+            }
+            const bool moved = worst_[k].spot < from || from < worst_[k].spot;
+            if (!moved) {
+                bool inside = false;  // at a corner one closer look is enough
+                for (int d = 0; d < 4; ++d) inside |= !dimension(d).single() && worst_[k].spot.share[d] > 0 && worst_[k].spot.share[d] < 1;
+                step *= inside ? 0.5 : 0.125;
+            }
+        }
+    }
+
+    Exposure collect() {
+        Exposure exposure;
+        for (const Seat seat : kSeats) {
+            if (!has_seat(*setup_.converter.topology, seat)) continue;
+            const auto fitted = setup_.fitted.find(seat);
+            exposure.seats[seat].resize(fitted == setup_.fitted.end() ? 1 : fitted->second.size());
+        }
+        std::map<Spot, Operated> again;
+        const auto operated_at = [&](const Spot& spot) -> const Operated& {
+            const auto found = again.find(spot);
+            if (found != again.end()) return found->second;
+            return again.emplace(spot, operate(benches_[spot.variant], at(spot), solvers_[spot.variant])).first->second;
+        };
+        for (std::size_t k = 0; k < sight_.keys.size(); ++k) {
+            const StressKey& key = sight_.keys[k];
+            if (!worst_[k].any) continue;
+            const Spot& spot = worst_[k].spot;
+            exposure.seats[key.seat][key.entry].stresses.push_back(explain(benches_[spot.variant], key, at(spot), operated_at(spot)));
+        }
+        for (const Sight::Missing& missing : sight_.missing)
+            exposure.seats[missing.seat][missing.entry].missing.emplace_back(missing.stress, missing.figure);
+
+        StressValue regulation;
+        regulation.stress = Stress::regulation;
+        regulation.value = points_ > 0 ? static_cast<double>(reached_) / points_ : 0;
+        if (unreached_) {
+            regulation.at = at(*unreached_);
+            const SteadyState& state = operated_at(*unreached_).state;
+            if (state.highest_output > 0 && state.least_load == 0)
+                regulation.rests_on.push_back(fmt::format("there the output reaches {}", format_quantity(state.highest_output, Unit::volt)));
+            if (state.least_load > 0)
+                regulation.rests_on.push_back(fmt::format("there the least load that regulates is {}", format_quantity(state.least_load, Unit::ampere)));
+        } else {
+            regulation.at = at(hottest_);
+        }
+        regulation.made_of = {{"share of points reached", regulation.value}};
+        exposure.converter.stresses.push_back(regulation);
+
+        exposure.runaway = runaway_;
+        exposure.warnings = warnings_;
+        exposure.not_included = benches_.front().not_included;
+        exposure.assumptions = benches_.front().assumptions;
+        if (most_loss_ >= 0) {
+            const Operated& hottest = operated_at(hottest_);
+            exposure.hottest = at(hottest_);
+            exposure.losses = hottest.losses;
+            exposure.efficiency_total = hottest.state.input_power > 0 ? hottest.state.output_power / hottest.state.input_power : 0;
+            if (hottest.gate_power > 0)
+                exposure.assumptions.push_back(fmt::format("gate drive takes {} from the drive supply, not counted in the efficiency",
+                                                           format_quantity(hottest.gate_power, Unit::watt)));
+        }
+        if (!setup_.converter.drive.maximum_duty) exposure.assumptions.push_back("no duty limit is given");
+        if (!setup_.converter.source) exposure.assumptions.push_back("no [source]: the input capacitor carries all of the input ripple");
+        return exposure;
+    }
+};
+
+}  // namespace
+
+Exposure expose(const Setup& setup, End end, const Allowances& allowances, const Progress& progress) {
+    return Search(setup, end, allowances, progress).run();
+}
+
+}  // namespace binwright

@@ -1,0 +1,321 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+#include "engine/answer/sight.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+
+#include "engine/loss/figures.hpp"
+
+namespace binwright {
+namespace {
+
+using Terms = std::vector<Term>;
+
+double sum(const Terms& terms) {
+    double total = 0;
+    for (const Term& term : terms) total += term.value;
+    return total;
+}
+
+/// The sum of input and output (the latter as the transformer shows it) that a blocking voltage is made of: whichever of the four
+/// possible sums lies nearest, the rest being drops and ripple.
+Terms blocking_terms(double voltage, double input, double output, double input_scale, double output_scale) {
+    const double in = input * input_scale, out = output * output_scale;
+    const Terms choices[] = {{{"input", in}}, {{"output", out}}, {{"input", in}, {"output", out}}};
+    const Terms* best = &choices[0];
+    for (const Terms& choice : choices)
+        if (std::abs(sum(choice) - voltage) < std::abs(sum(*best) - voltage)) best = &choice;
+    Terms terms = *best;
+    terms.push_back({"drop and ripple", voltage - sum(terms)});
+    return terms;
+}
+
+const Fitted* fitted_at(const Bench& bench, const StressKey& key) {
+    const auto found = bench.setup->fitted.find(key.seat);
+    return found == bench.setup->fitted.end() || key.entry >= found->second.size() ? nullptr : &found->second[key.entry];
+}
+
+const CapacitorModel* capacitor_at(const Bench& bench, const StressKey& key) {
+    const auto found = bench.models.banks.find(key.seat);
+    return found == bench.models.banks.end() || key.entry >= found->second.size() ? nullptr : &found->second[key.entry].model;
+}
+
+const CapacitorStress& bank_state(const SteadyState& state, Seat seat) {
+    if (seat == Seat::input_capacitor) return state.input;
+    return seat == Seat::coupling_capacitor ? state.coupling : state.output;
+}
+
+/// Ripple current of one of the parts of an entry.
+double ripple_of_one(const Bench& bench, const StressKey& key, const Operated& operated) {
+    const CapacitorStress& state = bank_state(operated.state, key.seat);
+    const auto found = bench.models.banks.find(key.seat);
+    if (found == bench.models.banks.end()) return state.current_rms;
+    std::size_t branch = 0;  // entries without a capacitance are not in the network
+    for (std::size_t k = 0; k < key.entry; ++k) branch += found->second[k].model.capacitance.has_value();
+    if (branch >= state.branch_current_rms.size()) return 0;
+    return state.branch_current_rms[branch] / found->second[key.entry].count;
+}
+
+Terms switch_voltage_terms(const Bench& bench, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+    const SteadyState& state = operated.state;
+    const bool transformer = operated.circuit.topology->transformer;
+    Terms terms = blocking_terms(state.switch_.voltage_peak, at.input_voltage, state.output_voltage_average, 1,
+                                 transformer ? 1 / operated.circuit.turns_ratio : 1);
+    const SeatConfig& config = bench.setup->converter.seat(Seat::switch_);
+    if (config.overshoot) {
+        double volts = config.overshoot->voltage;
+        if (config.overshoot->at_current && *config.overshoot->at_current > 0)
+            volts *= std::max(0.0, state.switch_.current_turn_off) / *config.overshoot->at_current;
+        else
+            rests_on.push_back("overshoot measured at an unstated current, taken as it is");
+        terms.push_back({"overshoot, measured", volts});
+    } else if (bench.setup->converter.clamp.voltage) {
+        terms.push_back({"up to the clamp", std::max(0.0, *bench.setup->converter.clamp.voltage - state.switch_.voltage_peak)});
+    } else {
+        const double share = bench.allowances.switch_overshoot;
+        terms.push_back({"overshoot, assumed", share * state.switch_.voltage_peak});
+        rests_on.push_back(fmt::format("overshoot {} of {}, not measured", format_quantity(share, Unit::fraction),
+                                       format_quantity(state.switch_.voltage_peak, Unit::volt)));
+    }
+    return terms;
+}
+
+Terms rectifier_voltage_terms(const Bench& bench, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+    const SteadyState& state = operated.state;
+    const bool transformer = operated.circuit.topology->transformer;
+    Terms terms = blocking_terms(state.rectifier.reverse_voltage_peak, at.input_voltage, state.output_voltage_average,
+                                 transformer ? operated.circuit.turns_ratio : 1, 1);
+    const SeatConfig& config = bench.setup->converter.seat(Seat::rectifier);
+    if (config.overshoot) {
+        terms.push_back({"overshoot, measured", config.overshoot->voltage});
+    } else {
+        const double share = bench.allowances.rectifier_overshoot;
+        terms.push_back({"overshoot, assumed", share * state.rectifier.reverse_voltage_peak});
+        rests_on.push_back(fmt::format("overshoot {} of {}, not measured", format_quantity(share, Unit::fraction),
+                                       format_quantity(state.rectifier.reverse_voltage_peak, Unit::volt)));
+    }
+    return terms;
+}
+
+Terms capacitor_voltage_terms(Seat seat, const At& at, const Operated& operated) {
+    const CapacitorStress& state = bank_state(operated.state, seat);
+    const bool positive = std::abs(state.voltage_max) >= std::abs(state.voltage_min);
+    const double peak = positive ? state.voltage_max : -state.voltage_min;
+    if (seat == Seat::output_capacitor)
+        return {{"output", state.voltage_average}, {"half of its ripple", peak - state.voltage_average}};
+    if (seat == Seat::input_capacitor)
+        return {{"input", state.voltage_average}, {"half of its ripple", peak - state.voltage_average}};
+    Terms terms = blocking_terms(peak, at.input_voltage, operated.state.output_voltage_average, 1, 1);
+    terms.back().name = "drop and half of its ripple";
+    return terms;
+}
+
+double leg_share(const Bench& bench) {
+    const int legs = bench.models.rectifier->legs;
+    return legs > 1 ? (1 + bench.allowances.sharing) / legs : 1.0;
+}
+
+/// The terms of any stress; the value is their sum.
+Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+    const SteadyState& state = operated.state;
+    const Converter& converter = bench.setup->converter;
+    const double sharing = key.seat == Seat::switch_ && bench.models.switch_count > 1 ? (1 + bench.allowances.sharing) / bench.models.switch_count : 1;
+    switch (key.stress) {
+        case Stress::voltage_peak_repetitive:
+            if (key.seat == Seat::switch_) return switch_voltage_terms(bench, at, operated, rests_on);
+            if (key.seat == Seat::rectifier) return rectifier_voltage_terms(bench, at, operated, rests_on);
+            return capacitor_voltage_terms(key.seat, at, operated);
+        case Stress::voltage_peak_single: {
+            Terms terms = capacitor_voltage_terms(key.seat, at, operated);
+            const bool with_input = !terms.empty() && terms.front().name == "input";
+            if (converter.source && converter.source->surge && with_input)
+                terms.push_back({"surge above the input", std::max(0.0, *converter.source->surge - at.input_voltage)});
+            if (!converter.source || converter.source->switched) rests_on.push_back("hot connection not computed");
+            return terms;
+        }
+        case Stress::voltage_average: return {{"mean", bank_state(state, key.seat).voltage_average}};
+        case Stress::voltage_reverse: return {{"reverse", std::max(0.0, -bank_state(state, key.seat).voltage_min)}};
+        case Stress::gate_voltage: return {{"drive", converter.drive.voltage->highest}};
+        case Stress::drive_voltage_lowest:
+            return {{"lowest drive", converter.drive.voltage->lowest},
+                    {"drop in the sense resistor", -operated.circuit.sense_resistance * state.switch_.current_peak}};
+        case Stress::current_average:
+            if (leg_share(bench) != 1)
+                rests_on.push_back(fmt::format("the busier leg taken to carry {} more than its share", format_quantity(bench.allowances.sharing, Unit::fraction)));
+            return {{"per leg", state.rectifier.current_average * leg_share(bench)}};
+        case Stress::current_rms:
+            if (sharing != 1) rests_on.push_back("the busiest of the paralleled parts taken above its share");
+            return {{"switch current", state.switch_.current_rms * sharing}};
+        case Stress::current_peak:
+            if (key.seat == Seat::switch_) return {{"switch current", state.switch_.current_peak * sharing}};
+            return {{"per leg", state.rectifier.current_peak * leg_share(bench)}};
+        case Stress::ripple_current: return {{"ripple", ripple_of_one(bench, key, operated)}};
+        case Stress::power: {
+            Terms terms;
+            for (const Loss& loss : operated.losses)
+                if (loss.seat == key.seat) terms.push_back({loss.name, loss.power});
+            return terms;
+        }
+        case Stress::junction_temperature: {
+            if (!operated.stable) return {{"none", NAN}};
+            const auto junction = operated.junction(bench, key.seat);
+            return {{"ambient", at.ambient}, {"inner air above ambient", operated.air - at.ambient}, {"own and shared rise", *junction - operated.air}};
+        }
+        case Stress::runaway_gain: return {{"gain", operated.stable ? operated.heat.gain : std::max(1.0, operated.heat.gain) + 1e-9}};
+        case Stress::hot_spot_temperature: {
+            const auto rise = ripple_rise(*capacitor_at(bench, key), ripple_of_one(bench, key, operated));
+            return {{"ambient", at.ambient},
+                    {"inner air above ambient", operated.air - at.ambient},
+                    {"warmer by", converter.seat(key.seat).warmer_by},
+                    {"ripple", rise.value_or(0)}};
+        }
+        case Stress::life: {
+            const auto rise = ripple_rise(*capacitor_at(bench, key), ripple_of_one(bench, key, operated));
+            return {{"life", capacitor_life(*capacitor_at(bench, key), operated.air + converter.seat(key.seat).warmer_by + rise.value_or(0)).value_or(NAN)}};
+        }
+        case Stress::regulation: return {{"reached", state.reached ? 1.0 : 0.0}};
+    }
+    return {};
+}
+
+}  // namespace
+
+Sight sight_of(const Bench& bench) {
+    Sight sight;
+    const Setup& setup = *bench.setup;
+    const Converter& converter = setup.converter;
+    const auto see = [&](Seat seat, std::size_t entry, Stress stress) { sight.keys.push_back({seat, entry, stress}); };
+    const auto lacks = [&](Seat seat, std::size_t entry, Stress stress, std::string figure) {
+        sight.missing.push_back({seat, entry, stress, std::move(figure)});
+    };
+    for (const Seat seat : kSeats) {
+        if (!has_seat(*converter.topology, seat)) continue;
+        const auto fitted = setup.fitted.find(seat);
+        const std::size_t entries = fitted == setup.fitted.end() ? 1 : fitted->second.size();
+        for (std::size_t entry = 0; entry < entries; ++entry) {
+            const bool part = fitted != setup.fitted.end();
+            const bool heated = std::find(bench.heated.begin(), bench.heated.end(), seat) != bench.heated.end();
+            const auto heat = [&](Stress stress) {
+                if (heated) see(seat, entry, stress);
+                for (const auto& [where, figure] : bench.no_heat)
+                    if (where == seat) lacks(seat, entry, stress, figure);
+            };
+            if (seat == Seat::switch_) {
+                const bool held = converter.seat(seat).overshoot || converter.clamp.voltage;
+                if (converter.topology->transformer && !held) lacks(seat, entry, Stress::voltage_peak_repetitive, "a measured overshoot, or [clamp]");
+                else see(seat, entry, Stress::voltage_peak_repetitive);
+                if (converter.drive.voltage) {
+                    see(seat, entry, Stress::gate_voltage);
+                    see(seat, entry, Stress::drive_voltage_lowest);
+                } else {
+                    lacks(seat, entry, Stress::gate_voltage, "drive.voltage");
+                    lacks(seat, entry, Stress::drive_voltage_lowest, "drive.voltage");
+                }
+                see(seat, entry, Stress::current_rms);
+                see(seat, entry, Stress::current_peak);
+                if (!part) continue;
+                const SwitchModel& model = *bench.models.switch_;
+                if (!model.missing.empty() && !model.resistance) {
+                    lacks(seat, entry, Stress::power, "R_DS(on)");
+                    lacks(seat, entry, Stress::junction_temperature, "R_DS(on)");
+                } else if (!model.switching_charge || !converter.drive.voltage || !converter.drive.resistance) {
+                    const std::string what = !model.switching_charge ? "Q_g" : "drive.voltage and drive.resistance";
+                    lacks(seat, entry, Stress::power, what);
+                    lacks(seat, entry, Stress::junction_temperature, what);
+                } else {
+                    see(seat, entry, Stress::power);
+                    heat(Stress::junction_temperature);
+                }
+            } else if (seat == Seat::rectifier) {
+                see(seat, entry, Stress::voltage_peak_repetitive);
+                if (!part) continue;
+                see(seat, entry, Stress::current_average);
+                see(seat, entry, Stress::current_peak);
+                const RectifierModel& model = *bench.models.rectifier;
+                const std::string figure = !model.threshold ? "V_F" : !model.leakage ? "I_R" : model.pn && !model.recovery_charge ? "Q_rr" : "";
+                if (!figure.empty()) {
+                    for (const Stress stress : {Stress::power, Stress::junction_temperature, Stress::runaway_gain}) lacks(seat, entry, stress, figure);
+                } else {
+                    see(seat, entry, Stress::power);
+                    heat(Stress::junction_temperature);
+                    heat(Stress::runaway_gain);
+                }
+            } else {
+                see(seat, entry, Stress::voltage_average);
+                see(seat, entry, Stress::voltage_peak_repetitive);
+                see(seat, entry, Stress::voltage_peak_single);
+                see(seat, entry, Stress::voltage_reverse);
+                if (!part) continue;
+                const CapacitorModel& model = bench.models.banks.at(seat)[entry].model;
+                if (!model.capacitance) {
+                    lacks(seat, entry, Stress::ripple_current, "C");
+                    continue;
+                }
+                const bool shared = entries > 1 && !model.resistance;
+                if (shared) lacks(seat, entry, Stress::ripple_current, "ESR");
+                else see(seat, entry, Stress::ripple_current);
+                if (model.ripple && !shared) {
+                    see(seat, entry, Stress::hot_spot_temperature);
+                    if (model.life && model.highest_temperature && capacitor_life(model, 300)) see(seat, entry, Stress::life);
+                    else lacks(seat, entry, Stress::life, model.life ? "T_max" : "life");
+                } else {
+                    lacks(seat, entry, Stress::hot_spot_temperature, shared ? "ESR" : "I_R~");
+                    lacks(seat, entry, Stress::life, shared ? "ESR" : "I_R~");
+                }
+            }
+        }
+    }
+    return sight;
+}
+
+std::vector<double> look(const Bench& bench, const Sight& sight, const At& at, const Operated& operated) {
+    std::vector<double> values;
+    values.reserve(sight.keys.size());
+    std::vector<std::string> unused;
+    for (const StressKey& key : sight.keys) {
+        unused.clear();
+        values.push_back(sum(terms_of(bench, key, at, operated, unused)));
+    }
+    return values;
+}
+
+StressValue explain(const Bench& bench, const StressKey& key, const At& at, const Operated& operated) {
+    StressValue value;
+    value.stress = key.stress;
+    value.at = at;
+    value.made_of = terms_of(bench, key, at, operated, value.rests_on);
+    std::erase_if(value.made_of, [&](const Term& term) { return term.value == 0 && value.made_of.size() > 1; });
+    value.value = sum(value.made_of);
+    const auto take = [&](const std::vector<std::string>& from) {
+        value.rests_on.insert(value.rests_on.end(), from.begin(), from.end());
+    };
+    switch (key.stress) {
+        case Stress::power:
+        case Stress::junction_temperature:
+        case Stress::runaway_gain:
+            if (key.seat == Seat::switch_ && bench.models.switch_) take(bench.models.switch_->rests_on);
+            if (key.seat == Seat::rectifier && bench.models.rectifier) take(bench.models.rectifier->rests_on);
+            take(bench.assumptions);
+            break;
+        case Stress::ripple_current:
+        case Stress::hot_spot_temperature:
+        case Stress::life:
+            if (const CapacitorModel* model = capacitor_at(bench, key)) {
+                take(model->rests_on);
+                if (model->aged) value.rests_on.push_back("end-of-life C and ESR: pulled, and not measured");
+                if (!model->resistance) value.rests_on.push_back("ESR not on record, counted as 0");
+            }
+            break;
+        default: break;
+    }
+    if (const Fitted* fitted = fitted_at(bench, key); fitted != nullptr && key.stress == Stress::voltage_peak_repetitive) {
+        const CapacitorModel* model = capacitor_at(bench, key);
+        if (model != nullptr && !model->resistance) value.rests_on.push_back("ESR not on record: its share of the ripple is not in");
+        if (model != nullptr && model->kind == CapacitorKind::ceramic2) value.rests_on.push_back("capacitance at bias by planning figures");
+    }
+    return value;
+}
+
+}  // namespace binwright
