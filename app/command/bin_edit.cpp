@@ -103,7 +103,7 @@ Command bin_edit_command() {
     return {.name = "bin edit",
             .summary = "change what is on record of a lot, or of a part type",
             .about = "",
-            .options = {{"LABEL", "LOT|TYPE", "a lot's label, or the name of a type", false, true},
+            .options = {{"LABEL", "LABEL|TYPE", "a lot's label, or the name of a type", false, true},
                         {"--count", "N", "pieces of the lot"},
                         {"--place", "PATH", "where it lies"},
                         {"--origin", "WHICH", "new, surplus or pulled"},

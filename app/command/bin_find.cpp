@@ -29,7 +29,7 @@ Command bin_find_command() {
             .summary = "lots by words, and by what their figures are",
             .about = "Every word must occur in the lot's type, figures, place, note or label. A word may also be a figure and a bound: V_RRM>=60V, "
                      "or family:rectifier, origin:pulled, place:Shed. Exit status 1 when nothing is found.",
-            .options = {{"WORD", "TEXT", "what to look for", true, true}},
+            .options = {{"WORD", "WORD …", "what to look for", true, true}},
             .example = "binwright --bin demo bin find schottky \"V_RRM>=45V\"",
             .example_says = "the demo bin's Schottky rectifiers from 45 V up",
             .run = run};

@@ -52,8 +52,8 @@ Command bin_measure_command() {
             .summary = "add readings taken on a lot",
             .about = "A reading carries its conditions behind @. Where a lot has several of one figure, the worst that is not set aside counts. A "
                      "rating is never measured up: a breakdown measured at 68 V does not make a 60 V part better. Discharge capacitors before measuring.",
-            .options = {{"LABEL", "LOT", "the lot", false, true},
-                        {"FIGURE", "SYMBOL=VALUE", "ESR=38m@100kHz, C=\"445 uF @ 120 Hz\" …", true, true},
+            .options = {{"LABEL", "", "the lot", false, true},
+                        {"FIGURE", "SYMBOL=VALUE …", "ESR=38m@100kHz, C=\"445 uF @ 120 Hz\" …", true, true},
                         {"--date", "YYYY-MM-DD", "when (else today)"},
                         {"--method", "TEXT", "with what: \"LCR meter\""},
                         {"--sure", "", "store a value that such a part hardly has"}},

@@ -95,7 +95,7 @@ Command bin_show_command() {
     return {.name = "bin show",
             .summary = "one lot with its readings, or one part type, with every figure and how it is known",
             .about = "",
-            .options = {{"LABEL", "LOT|TYPE", "a lot's label (417-H; the letter may be left out), or the name of a type", false, true}},
+            .options = {{"LABEL", "LABEL|TYPE", "a lot's label (417-H; the letter may be left out), or the name of a type", false, true}},
             .example = "binwright --bin demo bin show 1",
             .example_says = "the demo bin's first lot",
             .run = run};

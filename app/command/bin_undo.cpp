@@ -41,7 +41,7 @@ int step(Session& session, const char* command, bool undo) {
     if (session.json)
         print_json(session, command, {{"bin", path}, {"what", entry->what}, {"when", entry->when}, {"dry_run", session.dry_run}});
     else if (!session.quiet)
-        session.out << (session.dry_run ? undo ? "would take back: " : session.dry_run ? "would make again: " : undo ? "taken back: " : "made again: ") << entry->what << '\n';
+        session.out << (session.dry_run ? (undo ? "would take back: " : "would make again: ") : undo ? "taken back: " : "made again: ") << entry->what << '\n';
     return 0;
 }
 

@@ -101,7 +101,7 @@ Command check_command() {
             .summary = "judge what is fitted by the rulebook",
             .about = "Exit status 0 when everything holds, 1 when something is rejected, 3 when nothing is rejected but something is "
                      "unproven. With --quiet: the sentence over everything and one line a seat.",
-            .options = {{"FILE", "PATH", "a converter file, or - for standard input", false, true}},
+            .options = {{"FILE", "", "a converter file, or - for standard input", false, true}},
             .example = "binwright --bin demo check app/demo/tide-gauge.toml --with operating.output_voltage=\"9 V .. 18 V\"",
             .example_says = "the demo's converter with its output raised to 18 V: what no longer holds, by how much, and what would mend it",
             .run = run};

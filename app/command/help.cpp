@@ -81,7 +81,7 @@ Command help_command() {
     return {.name = "help",
             .summary = "help on a command, or on the figures of parts",
             .about = "",
-            .options = {{"TOPIC", "WORD", "a command, or figures", true}},
+            .options = {{"TOPIC", "", "a command, or figures", true}},
             .example = "binwright help figures",
             .example_says = "the symbols of parts' figures, their units and usual conditions",
             .run = run};

@@ -71,7 +71,7 @@ Command new_command() {
             .summary = "write a commented converter file to start from",
             .about = "TOPOLOGY is buck, boost, inverting, sepic, cuk, zeta or flyback. Every value in the new file is a starting "
                      "point computed from the wishes below; change what you know better.",
-            .options = {{"TOPOLOGY", "NAME", "the kind of converter", false, true},
+            .options = {{"TOPOLOGY", "", "the kind of converter", false, true},
                         {"-o,--output", "FILE", "where to write it (else standard output)"},
                         {"--title", "TEXT", "its title"},
                         {"--input", "RANGE", "input voltage: \"10.5 V .. 15 V\""},

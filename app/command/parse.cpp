@@ -13,6 +13,26 @@ namespace {
 
 bool is_positional(const Option& option) { return !option.name.starts_with('-'); }
 
+/// A positional argument as help shows it.
+std::string shown(const Option& option) { return option.takes.empty() ? option.name : option.takes; }
+
+/// A call folded before its options, each line but the last ending in a backslash as a shell takes it.
+std::string folded_call(const std::string& call) {
+    std::string out, line = "example: ";
+    std::string rest = call;
+    while (!rest.empty()) {
+        const std::size_t next = rest.find(" --", 1);
+        const std::string piece = rest.substr(0, next);
+        rest.erase(0, piece.size());
+        if (text_width(line) + text_width(piece) > kTextWidth - 2) {
+            out += line + " \\\n";
+            line = "         ";
+        }
+        line += line == "         " ? piece.substr(1) : piece;
+    }
+    return out + line + "\n";
+}
+
 std::string last_name(const Option& option) {
     const std::size_t comma = option.name.rfind(',');
     return comma == std::string::npos ? option.name : option.name.substr(comma + 1);
@@ -35,10 +55,10 @@ std::string help_hint(const Command* command) {
 std::string option_rows(const std::vector<Option>& options) {
     Rows rows;
     for (const Option& option : options) {
-        std::string name = option.name;
+        std::string name = is_positional(option) ? shown(option) : option.name;
         const std::size_t comma = name.find(',');
         if (comma != std::string::npos) name.insert(comma + 1, " ");
-        if (!option.takes.empty()) name += " " + option.takes;
+        if (!is_positional(option) && !option.takes.empty()) name += " " + option.takes;
         rows.rows.push_back({name, option.help});
     }
     return rows.text(2);
@@ -52,8 +72,7 @@ std::string usage(const Command& command) {
             options = true;
             continue;
         }
-        const std::string name = option.name + (option.many ? " …" : "");
-        line += option.needed ? " " + name : " [" + name + "]";
+        line += option.needed ? " " + shown(option) : " [" + shown(option) + "]";
     }
     return line + (options ? " [options]" : "");
 }
@@ -143,6 +162,7 @@ ParsedCall parse_call(const Command* command, const std::vector<std::string>& re
     struct Slot {
         Option option;
         std::vector<std::string> texts;
+        std::string text;
         bool flag = false;
         CLI::Option* handle = nullptr;
     };
@@ -151,16 +171,14 @@ ParsedCall parse_call(const Command* command, const std::vector<std::string>& re
     for (std::size_t k = 0; k < options.size(); ++k) {
         Slot& slot = slots[k];
         slot.option = options[k];
-        if (is_positional(slot.option)) {
-            slot.handle = app.add_option(slot.option.name, slot.texts);
-            slot.handle->expected(0, slot.option.many ? CLI::detail::expected_max_vector_size : 1);
-        } else if (slot.option.takes.empty()) {
+        const bool positional = is_positional(slot.option);
+        if (!positional && slot.option.takes.empty())
             slot.handle = app.add_flag(slot.option.name, slot.flag);
-        } else {
-            slot.handle = app.add_option(slot.option.name, slot.texts)->allow_extra_args(false);
-        }
-        if (!slot.option.many && !slot.option.takes.empty())
-            slot.handle->multi_option_policy(CLI::MultiOptionPolicy::TakeAll);
+        else if (slot.option.many)
+            slot.handle = app.add_option(slot.option.name, slot.texts)->allow_extra_args(positional);
+        else
+            slot.handle = app.add_option(slot.option.name, slot.text)->multi_option_policy(CLI::MultiOptionPolicy::TakeLast);
+        if (positional && slot.option.many) slot.handle->expected(0, CLI::detail::expected_max_vector_size);
     }
     try {
         app.parse(std::vector<std::string>(rest.rbegin(), rest.rend()));
@@ -175,11 +193,11 @@ ParsedCall parse_call(const Command* command, const std::vector<std::string>& re
     }
     for (const Slot& slot : slots) {
         const std::string name = last_name(slot.option);
-        if (slot.flag) parsed.call.values[name] = {};
-        if (slot.texts.empty()) continue;
-        if (!slot.option.many && slot.texts.size() > 1)
-            throw InputError(call_fault(name, name + " is given " + std::to_string(slot.texts.size()) + " times"));
-        parsed.call.values[name] = slot.texts;
+        if (slot.handle->count() == 0) continue;
+        const bool flag = !is_positional(slot.option) && slot.option.takes.empty();
+        if (!slot.option.many && !flag && slot.handle->count() > 1)
+            throw InputError(call_fault(name, name + " is given " + std::to_string(slot.handle->count()) + " times"));
+        parsed.call.values[name] = flag ? std::vector<std::string>{} : slot.option.many ? slot.texts : std::vector<std::string>{slot.text};
     }
     parsed.help = parsed.call.has("--help");
     parsed.version = parsed.call.has("--version");
@@ -229,7 +247,7 @@ std::string help_text(const Command* command) {
     if (!command->about.empty()) text += "\n" + folded(command->about) + "\n";
     if (!command->options.empty()) text += "\n" + option_rows(command->options);
     text += "\noptions of every command\n" + option_rows(common_options());
-    text += "\nexample: " + command->example + "\n         " + folded(command->example_says, 9, 9) + "\n";
+    text += "\n" + folded_call(command->example) + "         " + folded(command->example_says, 9, 9) + "\n";
     return text;
 }
 
@@ -243,7 +261,7 @@ std::string group_help_text(std::string_view group) {
             rows.rows.push_back({each.name, each.summary});
         }
     text += rows.text(2);
-    if (first) text += "\nexample: " + first->example + "\n         " + folded(first->example_says, 9, 9) + "\n";
+    if (first) text += "\n" + folded_call(first->example) + "         " + folded(first->example_says, 9, 9) + "\n";
     return text;
 }
 

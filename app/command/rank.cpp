@@ -112,8 +112,8 @@ Command rank_command() {
             .summary = "the bin's lots for one seat, best first, and why the others do not hold",
             .about = "SEAT is switch, rectifier, input_capacitor, coupling_capacitor or output_capacitor, or its reference (C3). Exit "
                      "status 0 when at least one lot holds, 3 when the best is unproven, 1 when none is either.",
-            .options = {{"FILE", "PATH", "a converter file, or - for standard input", false, true},
-                        {"SEAT", "NAME", "the seat to find parts for", false, true},
+            .options = {{"FILE", "", "a converter file, or - for standard input", false, true},
+                        {"SEAT", "", "the seat to find parts for", false, true},
                         {"--prefer", "WHAT", "headroom (else), cool, life or thrift: the order among equals in verdict"},
                         {"-n,--most", "N", "the first N alone"}},
             .example = "binwright --bin demo rank app/demo/tide-gauge.toml output_capacitor",

@@ -113,7 +113,7 @@ Command rulebook_show_command() {
 
 Command rulebook_validate_command() {
     return {.name = "rulebook validate", .summary = "check a rulebook file: every fault at once, with its place", .about = "",
-            .options = {{"FILE", "PATH", "a rulebook, or - for standard input", false, true}},
+            .options = {{"FILE", "", "a rulebook, or - for standard input", false, true}},
             .example = "binwright rulebook validate engine/rule/rulebooks/house.toml", .example_says = "the house rulebook's own file, from the source folder", .run = validate};
 }
 

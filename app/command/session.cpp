@@ -92,14 +92,14 @@ void write_text(Session& session, const std::string& path, const std::string& te
         session.out << text;
         return;
     }
-    if (!replace && exists(path))
-        throw call_error(path, "", "is there already and is left as it is (add --sure to replace it)", "a new file");
     if (exists(path) && fs::is_directory(path)) cannot_write(path, EISDIR);
     const bool plain = !exists(path) || fs::is_regular_file(path);  // a device or a pipe is written to as it is
+    if (!replace && plain && exists(path))
+        throw call_error(path, "", "is there already and is left as it is (add --sure to replace it)", "a new file");
     const std::string beside = plain ? path + ".part" : path;
     const int file = open(beside.c_str(), O_WRONLY | O_CREAT | (plain ? O_TRUNC : 0) | O_CLOEXEC, 0666);
     if (file < 0) cannot_write(path, errno);
-    const auto give_up = [&](int why) {
+    const auto give_up = [&](int why) {  // not a matter of the call: the disk
         close(file);
         if (plain) unlink(beside.c_str());
         cannot_write(path, why);
@@ -185,7 +185,14 @@ Job job_for(Session& session, const std::string& path) {
         for (const FittedConfig& fitted : config.fitted) {
             std::string why;
             try {
-                if (bin.store.engine_lot(fitted.lot)) continue;
+                if (const std::optional<Lot> found = bin.store.engine_lot(fitted.lot)) {
+                    // A label is a running number of one bin: in another bin it may be on something else.
+                    for (const Lot& lot : config.as_fitted)
+                        if (lot.label == fitted.lot && lot.part.name != found->part.name)
+                            note(session, to_string(Fault{fitted.place, "", fitted.lot + " in this bin (" + bin.name + ") is " + found->part.name + ", and the file was saved with " +
+                                                                                 lot.part.name + "; judged is the bin's", ""}));
+                    continue;
+                }
             } catch (const EditRefused& refused) {
                 why = refused.what();
             }

@@ -19,10 +19,10 @@ struct Session {
     std::ostream& out;
     std::ostream& err;
     bool json = false, dry_run = false, quiet = false, sure = false, colour = false;
-    std::optional<std::string> bin;       ///< --bin
-    std::optional<std::string> rulebook;  ///< --rulebook
-    std::vector<std::string> with;        ///< --with
-    std::vector<std::string> notes;       ///< said beside the answer
+    std::optional<std::string> bin{};     ///< --bin
+    std::optional<std::string> rulebook{};///< --rulebook
+    std::vector<std::string> with{};      ///< --with
+    std::vector<std::string> notes{};     ///< said beside the answer
 };
 
 /// Says something beside the answer: on standard error, or among "notes" with --json; nothing with --quiet.

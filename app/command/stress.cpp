@@ -71,8 +71,12 @@ void print_point(Session& session, const ElectricalPoint& point, const Topology&
 
 std::string waveform_text(const Setup& setup, const ElectricalPoint& point) {
     OperatingPoint run = point_of(setup, point.at);
-    run.output_voltage.reset();  // at the duty that was found: the same steady state, reached or not
+    run.output_voltage.reset();  // at the duty and the load that were found: the same steady state, reached or not
     run.duty = point.state.duty;
+    const double current = point.state.output_current_average;
+    const bool resistive = run.load == LoadKind::resistance && current > 0;
+    run.load = resistive ? LoadKind::resistance : LoadKind::current;
+    run.load_value = resistive ? point.state.output_voltage_average / current : current;
     const Waveforms waves = waveforms(circuit_of(setup, End::typical, Allowances{}, point.at), run);
     std::string text;
     for (std::size_t k = 0; k < waves.names.size(); ++k) {
@@ -161,7 +165,7 @@ Command stress_command() {
             .summary = "electrical stresses of every seat, worst over the operating range or at one point",
             .about = "The waveforms' own extremes, without overshoot. Exit status 1 where a point is not reached. With --at, what is "
                      "not named stands at its typical value; duty=0.4 instead of an output voltage runs it unregulated.",
-            .options = {{"FILE", "PATH", "a converter file, or - for standard input", false, true},
+            .options = {{"FILE", "", "a converter file, or - for standard input", false, true},
                         {"--at", "KEY=VALUE", "one point: input_voltage, output_voltage, output_current, frequency, ambient or duty; one pair each", true},
                         {"--waveforms", "OUT.csv", "one period of every current and voltage, at that point or the typical one"}},
             .example = "binwright --bin demo stress app/demo/tide-gauge.toml --at input_voltage=12V --at output_voltage=15V --at output_current=2A",
