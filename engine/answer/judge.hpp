@@ -25,6 +25,7 @@ struct Remedy {
     std::optional<double> at_least, at_most;
     std::optional<double> usual;    ///< next value that can be had
     Conditions at;                  ///< of a measurement
+    std::optional<double> accuracy; ///< of a measurement: this near is near enough, as a fraction
 };
 
 /// The figure whose value decides an unproven finding.
@@ -32,6 +33,19 @@ struct Bound {
     Symbol figure{};
     std::optional<double> at_most, at_least;
     Conditions at;
+};
+
+/// What decides a finding: a rule's bound, or something about the part that no bound can weigh.
+enum class Ground {
+    rule,
+    nothing_fitted,  ///< the seat is empty
+    bare_element,    ///< a circuit element stands there, no part is chosen
+    not_covered,     ///< outside what the family's models are made for
+    no_rule,         ///< the rulebook has no rule for such a part
+    suspect,         ///< a reading lies outside the type's limits
+    unmeasured,      ///< pulled, of a kind that ages, and not measured
+    expired,         ///< measured too long ago, of a kind that ages
+    outside_model,   ///< the converter cannot be computed with it
 };
 
 struct Finding {
@@ -48,6 +62,10 @@ struct Finding {
     std::optional<double> used, left, headroom;  ///< contract.md, JSON
     std::optional<Bound> bound;
     std::string missing;                ///< the figure not on record, when that is why
+    Ground ground = Ground::rule;
+    std::string why;                    ///< where the ground is no rule: what is the matter, as a sentence without its full stop
+    std::vector<Figure> told;           ///< figures to vouch for: it would be decided if they were known
+    std::optional<double> printed;      ///< the rating as printed, where `rating` is what is left of it here (case, cold, frequency)
     std::vector<std::string> rests_on;
     std::vector<Remedy> remedies;
 };

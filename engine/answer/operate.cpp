@@ -253,11 +253,11 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         if (circuit.topology->transformer && circuit.coupling < 1)
             add("leakage inductance", {}, 0.5 * circuit.primary.inductance * (1 - circuit.coupling * circuit.coupling) * state.switch_.current_turn_off *
                                               state.switch_.current_turn_off * at.frequency);
-        if (moved < 1e-8 || (!result.stable && round > 3)) {
+        if (moved < 1e-6 || (!result.stable && round > 3)) {
             result.state = state;
             break;
         }
-        result.state = state;
+        if (round == 79) result.state = state;
     }
     result.gate_power = switch_loss_now.gate;
     result.circuit = circuit;

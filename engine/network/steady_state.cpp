@@ -154,6 +154,9 @@ class Core {
             const Column<N> start = period_.start;
             const double duty = period_.duty;
             if (period_.shoot(wanted, 10) && period_.duty >= least && period_.duty <= most && period_.slope_of_output > 0) return;
+            if (period_.settle(duty) && period_.shoot(wanted, 12) && period_.duty >= least && period_.duty <= most &&
+                period_.slope_of_output > 0)
+                return;
             period_.start = start;
             period_.duty = duty;
         }

@@ -1,0 +1,153 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// What is fitted, exposed at both ends of all spreads and judged; nothing is decided in here that judge_part does not.
+#include <chrono>
+#include <cmath>
+#include <map>
+#include <memory>
+
+#include "engine/answer/judge_setup.hpp"
+#include "engine/answer/models.hpp"
+
+namespace binwright {
+namespace {
+
+std::string today() {
+    const std::chrono::year_month_day date{std::chrono::floor<std::chrono::days>(std::chrono::system_clock::now())};
+    const auto two = [](unsigned n) { return (n < 10 ? "0" : "") + std::to_string(n); };
+    return std::to_string(static_cast<int>(date.year())) + "-" + two(static_cast<unsigned>(date.month())) + "-" + two(static_cast<unsigned>(date.day()));
+}
+
+PartExposure of(const Exposure& exposure, Seat seat, std::size_t entry) {
+    const PartExposure* found = find_exposure(exposure, seat, entry);
+    return found ? *found : PartExposure{};
+}
+
+/// The setup with one figure of one fitted kind exactly known.
+Setup with_figure(const Setup& setup, Seat seat, std::size_t entry, Symbol symbol, double value) {
+    std::vector<Fitted> fitted = setup.fitted.at(seat);
+    Lot& lot = fitted[entry].lot;
+    Figure figure;
+    figure.symbol = symbol;
+    figure.at = info(symbol).usual;
+    for (const Figure& one : lot.part.figures)
+        if (one.symbol == symbol) figure = one;
+    figure.value = {value, value, value};
+    figure.known = Known::measured;
+    std::erase_if(lot.part.figures, [&](const Figure& one) { return one.symbol == symbol; });
+    lot.part.figures.push_back(figure);
+    return with_fitted(setup, seat, std::move(fitted));
+}
+
+SinkShare sink_of(const Converter& converter, const std::string& name, const Exposure& exposure) {
+    SinkShare sink;
+    sink.name = name;
+    sink.resistance = converter.heatsinks.at(name);
+    for (const Loss& loss : exposure.losses)
+        if (loss.seat && converter.seat(*loss.seat).heatsink == name) sink.power += loss.power;
+    return sink;
+}
+
+}  // namespace
+
+bool differs_between_ends(const Setup& setup) {
+    for (const auto& [seat, fitted] : setup.fitted)
+        for (const Fitted& entry : fitted) {
+            if (ages_unmeasured(entry.lot)) return true;
+            for (const Figure& figure : entry.lot.part.figures)
+                if (!figure.value.exact()) return true;
+        }
+    return false;
+}
+
+BothEnds expose_both(const Setup& setup, const Allowances& allowances, const Progress& progress) {
+    BothEnds ends;
+    const bool both = differs_between_ends(setup);
+    const auto part = [&](double from, double share) -> Progress {
+        if (!progress) return {};
+        return [&progress, from, share](double done) { return progress(from + share * done); };
+    };
+    ends.worst = expose(setup, End::worst, allowances, part(0, both ? 0.5 : 1));
+    // The model of a part has its own spread (R_DS(on) with temperature, leakage), so that ends differ even where figures do
+    // not; with exact figures what breaks is shown at the worst end, and only a rejection needs the best one.
+    ends.best = expose(setup, End::best, allowances, part(both ? 0.5 : 1, both ? 0.5 : 0));
+    return ends;
+}
+
+std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, const Rulebook& book, const std::vector<Seat>& seats, bool search,
+                                    const Progress& progress) {
+    std::vector<SeatReport> out;
+    const Converter& converter = setup.converter;
+    for (const Seat seat : seats) {
+        if (!has_seat(*converter.topology, seat)) continue;
+        const SeatConfig& config = converter.seat(seat);
+        const auto fitted = setup.fitted.find(seat);
+        if (fitted == setup.fitted.end() || fitted->second.empty()) {
+            out.push_back(judge_empty(seat, converter.reference(seat), config.element.has_value(), book.name));
+            continue;
+        }
+        for (std::size_t entry = 0; entry < fitted->second.size(); ++entry) {
+            JudgedPart part;
+            part.seat = seat;
+            part.reference = converter.reference(seat);
+            part.lot = fitted->second[entry].lot;
+            part.count = fitted->second[entry].count;
+            part.best = of(ends.best, seat, entry);
+            part.worst = of(ends.worst, seat, entry);
+            part.runaway_best = ends.best.runaway;
+            part.runaway_worst = ends.worst.runaway;
+            part.lowest_ambient = converter.operating.ambient.lowest;
+            part.highest_ambient = converter.operating.ambient.highest;
+            for (const OperatingInfo& one : kOperating) part.top.set(one.quantity, converter.operating.get(one.quantity).highest);
+            part.life_required = converter.operating.life;
+            if (converter.drive.voltage) {
+                part.drive_lowest = converter.drive.voltage->lowest;
+                part.drive_highest = converter.drive.voltage->highest;
+            }
+            part.today = today();
+            if (!config.heatsink.empty() && converter.heatsinks.contains(config.heatsink)) part.sink = sink_of(converter, config.heatsink, ends.worst);
+            if (search) {
+                const auto step = [&progress] { if (progress && !progress(1)) throw Stopped(); };
+                const auto seen = std::make_shared<std::map<std::pair<Symbol, double>, PartExposure>>();
+                part.probe = [&setup, &book, seat, entry, seen, step](Symbol symbol, double value) -> std::optional<PartExposure> {
+                    step();
+                    const auto known = seen->find({symbol, value});
+                    if (known != seen->end()) return known->second;
+                    try {
+                        const Exposure exposure = expose(with_figure(setup, seat, entry, symbol, value), End::worst, book.allowances);
+                        return seen->emplace(std::pair(symbol, value), of(exposure, seat, entry)).first->second;
+                    } catch (const OutsideModel&) {
+                        return std::nullopt;
+                    }
+                };
+                if (part.sink)
+                    part.sink_probe = [&setup, &book, seat, entry, step, name = part.sink->name](double resistance) -> std::optional<PartExposure> {
+                        step();
+                        Setup other = setup;
+                        other.converter.heatsinks[name] = resistance;
+                        try {
+                            return of(expose(other, End::worst, book.allowances), seat, entry);
+                        } catch (const OutsideModel&) {
+                            return std::nullopt;
+                        }
+                    };
+            }
+            out.push_back(judge_part(part, book));
+        }
+    }
+    return out;
+}
+
+CheckReport check(const Setup& setup, const Rulebook& book, const Progress& progress) {
+    CheckReport report;
+    const Progress first = progress ? Progress([&progress](double done) { return progress(0.9 * done); }) : Progress();
+    BothEnds ends = expose_both(setup, book.allowances, first);
+    report.seats = judge_setup(setup, ends, book, {std::begin(kSeats), std::end(kSeats)}, true, progress);
+    report.converter = judge_converter(ends.best.converter, ends.worst.converter, book);
+    report.exposure = std::move(ends.worst);
+    report.verdict = Verdict::holds;
+    for (const SeatReport& seat : report.seats) report.verdict = graver(report.verdict, seat.verdict);
+    for (const Finding& finding : report.converter) report.verdict = graver(report.verdict, finding.verdict);
+    return report;
+}
+
+}  // namespace binwright
