@@ -7,6 +7,7 @@
 
 #include "engine/answer/judge_setup.hpp"
 #include "engine/answer/models.hpp"
+#include "engine/answer/sight.hpp"
 
 namespace binwright {
 namespace {
@@ -38,6 +39,43 @@ Setup with_figure(const Setup& setup, Seat seat, std::size_t entry, Symbol symbo
     return with_fitted(setup, seat, std::move(fitted));
 }
 
+/// At one point alone: both ends of the tolerance of inductance, the worse of each stress.
+PartExposure at_point(const Setup& setup, const Allowances& allowances, Seat seat, std::size_t entry, const At& at) {
+    const auto& winding = setup.converter.winding;
+    const double first = winding.primary ? winding.primary->tolerance.value_or(0) : 0;
+    const double second = winding.secondary ? winding.secondary->tolerance.value_or(0) : first;
+    Bench bench = bench_of(setup, End::worst, allowances);
+    const Sight sight = sight_of(bench);
+    PartExposure out;
+    for (const double sign : {-1.0, 1.0}) {
+        bench.primary_factor = 1 + sign * first;
+        bench.secondary_factor = 1 + sign * second;
+        Solver solver;
+        const Operated operated = operate(bench, at, solver);
+        for (const StressKey& key : sight.keys) {
+            if (key.seat != seat || key.entry != entry) continue;
+            StressValue value = explain(bench, key, at, operated);
+            StressValue* earlier = nullptr;
+            for (StressValue& one : out.stresses)
+                if (one.stress == key.stress) earlier = &one;
+            if (earlier == nullptr) out.stresses.push_back(std::move(value));
+            else if (std::isnan(value.value) || (key.lowest_is_worst() ? value.value < earlier->value : value.value > earlier->value)) *earlier = std::move(value);
+        }
+    }
+    for (const Sight::Missing& one : sight.missing)
+        if (one.seat == seat && one.entry == entry) out.missing.emplace_back(one.stress, one.figure);
+    return out;
+}
+
+std::optional<PartExposure> see(const Setup& setup, const Rulebook& book, Seat seat, std::size_t entry, const At* only) {
+    try {
+        if (only) return at_point(setup, book.allowances, seat, entry, *only);
+        return of(expose(setup, End::worst, book.allowances), seat, entry);
+    } catch (const OutsideModel&) {
+        return std::nullopt;
+    }
+}
+
 SinkShare sink_of(const Converter& converter, const std::string& name, const Exposure& exposure) {
     SinkShare sink;
     sink.name = name;
@@ -60,16 +98,13 @@ bool differs_between_ends(const Setup& setup) {
 }
 
 BothEnds expose_both(const Setup& setup, const Allowances& allowances, const Progress& progress) {
-    BothEnds ends;
-    const bool both = differs_between_ends(setup);
-    const auto part = [&](double from, double share) -> Progress {
+    const auto part = [&](double from) -> Progress {
         if (!progress) return {};
-        return [&progress, from, share](double done) { return progress(from + share * done); };
+        return [&progress, from](double done) { return progress(from + 0.5 * done); };
     };
-    ends.worst = expose(setup, End::worst, allowances, part(0, both ? 0.5 : 1));
-    // The model of a part has its own spread (R_DS(on) with temperature, leakage), so that ends differ even where figures do
-    // not; with exact figures what breaks is shown at the worst end, and only a rejection needs the best one.
-    ends.best = expose(setup, End::best, allowances, part(both ? 0.5 : 1, both ? 0.5 : 0));
+    BothEnds ends;
+    ends.worst = expose(setup, End::worst, allowances, part(0));
+    ends.best = expose(setup, End::best, allowances, part(0.5));
     return ends;
 }
 
@@ -108,27 +143,21 @@ std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, co
             if (search) {
                 const auto step = [&progress] { if (progress && !progress(1)) throw Stopped(); };
                 const auto seen = std::make_shared<std::map<std::pair<Symbol, double>, PartExposure>>();
-                part.probe = [&setup, &book, seat, entry, seen, step](Symbol symbol, double value) -> std::optional<PartExposure> {
+                part.probe = [&setup, &book, seat, entry, seen, step](Symbol symbol, double value, const At* only) -> std::optional<PartExposure> {
                     step();
                     const auto known = seen->find({symbol, value});
-                    if (known != seen->end()) return known->second;
-                    try {
-                        const Exposure exposure = expose(with_figure(setup, seat, entry, symbol, value), End::worst, book.allowances);
-                        return seen->emplace(std::pair(symbol, value), of(exposure, seat, entry)).first->second;
-                    } catch (const OutsideModel&) {
-                        return std::nullopt;
-                    }
+                    if (!only && known != seen->end()) return known->second;
+                    const Setup with = with_figure(setup, seat, entry, symbol, value);
+                    const auto found = see(with, book, seat, entry, only);
+                    if (!only && found) seen->emplace(std::pair(symbol, value), *found);
+                    return found;
                 };
                 if (part.sink)
-                    part.sink_probe = [&setup, &book, seat, entry, step, name = part.sink->name](double resistance) -> std::optional<PartExposure> {
+                    part.sink_probe = [&setup, &book, seat, entry, step, name = part.sink->name](double resistance, const At* only) -> std::optional<PartExposure> {
                         step();
-                        Setup other = setup;
-                        other.converter.heatsinks[name] = resistance;
-                        try {
-                            return of(expose(other, End::worst, book.allowances), seat, entry);
-                        } catch (const OutsideModel&) {
-                            return std::nullopt;
-                        }
+                        Setup with = setup;
+                        with.converter.heatsinks[name] = resistance;
+                        return see(with, book, seat, entry, only);
                     };
             }
             out.push_back(judge_part(part, book));

@@ -179,8 +179,8 @@ void append(std::vector<std::string>& to, const std::vector<std::string>& from) 
 }
 
 /// The stress of a part under one figure set, against the rule's limit there. Empty where it cannot be told.
-std::optional<bool> holds_with(const Rule& rule, JudgedPart part, Symbol symbol, double value) {
-    const auto seen = part.probe(symbol, value);
+std::optional<bool> holds_with(const Rule& rule, JudgedPart part, Symbol symbol, double value, const At* only) {
+    const auto seen = part.probe(symbol, value, only);
     if (!seen) return std::nullopt;
     Figure figure;
     figure.symbol = symbol;
@@ -243,10 +243,8 @@ void find_bound(Finding& finding, const JudgedPart& part) {
         } else {
             continue;
         }
-        const auto holds = [&](double value) { return holds_with(rule, part, symbol, value); };
-        const auto first = holds(good), last = holds(bad);
-        if (!first || !last || !*first || *last) continue;
-        const auto found = bound_between(good, bad, holds);
+        const auto holds = [&](double value, const At* only) { return holds_with(rule, part, symbol, value, only); };
+        const auto found = bound_between(good, bad, holds, finding.stress ? &finding.stress->at : &part.top);
         if (!found) continue;
         Bound bound;
         bound.figure = symbol;

@@ -9,10 +9,11 @@
 
 namespace binwright {
 
-/// What the part would see at the worst end if one of its figures were exactly this. Empty: cannot be computed.
-using Probe = std::function<std::optional<PartExposure>(Symbol figure, double value)>;
+/// What the part would see at the worst end if one of its figures were exactly this: over the whole operating range, or at
+/// one point of it alone (quick, and never worse than over the range). Empty: cannot be computed.
+using Probe = std::function<std::optional<PartExposure>(Symbol figure, double value, const At* only)>;
 /// Likewise with another heatsink [K/W].
-using SinkProbe = std::function<std::optional<PartExposure>(double resistance)>;
+using SinkProbe = std::function<std::optional<PartExposure>(double resistance, const At* only)>;
 
 /// The heatsink that a part stands on.
 struct SinkShare {
@@ -69,9 +70,12 @@ void sort_findings(std::vector<Finding>& findings);
 /// What would mend a broken finding: only what acts on its rule.
 [[nodiscard]] std::vector<Remedy> remedies_for(const Finding& finding, const JudgedPart& part, double scale);
 
-/// The value of `figure` up to which (or, where higher is better, from which) `holds` is true, within 0.5 % on its safe
-/// side, between two values of which the first holds and the second does not.
-[[nodiscard]] std::optional<double> bound_between(double holding, double breaking, const std::function<std::optional<bool>(double)>& holds);
+/// Whether the rule holds at a value, over the range or at one point alone; empty where it cannot be told.
+using HoldsAt = std::function<std::optional<bool>(double value, const At* only)>;
+/// The value up to which (or, where higher is better, from which) a rule holds, within 0.5 % on its safe side, between a
+/// harmless and a harmful one. Searched at one point, where beyond it the rule certainly breaks, and then proved over the whole
+/// range; searched over the range where the proof fails. Empty where the harmless value breaks or the harmful one does not.
+[[nodiscard]] std::optional<double> bound_between(double harmless, double harmful, const HoldsAt& holds, const At* point);
 
 /// Rounded to significant digits away from where it would break: down, or up.
 [[nodiscard]] double rounded_down(double value, int digits);

@@ -145,17 +145,32 @@ std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot
         } else {
             try {
                 const Setup with = with_fitted(setup, seat, {Fitted{candidate.lot, count}});
-                const BothEnds ends = expose_both(with, book.allowances, going);
-                candidate.report = judge_setup(with, ends, book, {seat}, candidate.lot.label.empty(), going).front();
+                BothEnds ends;
+                ends.worst = expose(with, End::worst, book.allowances, going);
+                ends.best = ends.worst;
+                const std::vector<Seat> all(std::begin(kSeats), std::end(kSeats));
+                std::vector<SeatReport> reports = judge_setup(with, ends, book, all, false, going);
+                // The worst end says all where everything holds there and nothing has a spread; a break may be one of the worst end
+                // alone, and the best end then tells.
+                const auto broken = [](const SeatReport& report) {
+                    return std::any_of(report.findings.begin(), report.findings.end(), [](const Finding& finding) { return finding.verdict == Verdict::rejected; });
+                };
+                const bool both = differs_between_ends(with) || std::any_of(reports.begin(), reports.end(), broken);
+                if (both) {
+                    ends.best = expose(with, End::best, book.allowances, going);
+                    reports = judge_setup(with, ends, book, others(seat), false, going);
+                }
+                candidate.report = judge_setup(with, ends, book, {seat}, true, going).front();
                 const auto found = ends.worst.seats.find(seat);
                 if (found != ends.worst.seats.end() && !found->second.empty()) seen = found->second.front();
-                if (!as_is.empty())
-                    for (const auto& [other, verdict] : verdicts_of(judge_setup(with, ends, book, others(seat), false, going))) {
-                        const auto before = as_is.find(other);
-                        if (before != as_is.end() && before->second != verdict)
-                            candidate.knock_on.push_back(setup.converter.reference(other) + ": " + std::string(to_string(before->second)) + " becomes " +
-                                                         std::string(to_string(verdict)));
-                    }
+                std::map<Seat, Verdict> now = verdicts_of(reports);
+                now.erase(seat);
+                for (const auto& [other, verdict] : now) {
+                    const auto before = as_is.find(other);
+                    if (before != as_is.end() && before->second != verdict)
+                        candidate.knock_on.push_back(setup.converter.reference(other) + ": " + std::string(to_string(before->second)) + " becomes " +
+                                                     std::string(to_string(verdict)));
+                }
             } catch (const OutsideModel& error) {
                 Finding finding = ground_finding(Ground::outside_model, error.what());
                 finding.seat = seat;

@@ -99,17 +99,14 @@ void add_sink(std::vector<Remedy>& out, const Finding& finding, const JudgedPart
     if ((!heat && !gain) || !part.sink || !(part.sink->resistance > 0)) return;
     Remedy better = remedy(Do::heatsink, "heatsink." + part.sink->name + ".resistance", Unit::kelvin_per_watt);
     if (part.sink_probe) {
-        const auto holds = [&](double resistance) -> std::optional<bool> {
-            const auto seen = part.sink_probe(resistance);
+        const auto holds = [&](double resistance, const At* only) -> std::optional<bool> {
+            const auto seen = part.sink_probe(resistance, only);
             if (!seen) return std::nullopt;
             const StressValue* stress = seen->find(finding.rule.stress);
             const StressValue* leak = seen->find(Stress::runaway_gain);
             return stress && std::isfinite(stress->value) && !breaks(finding.rule, stress->value, *finding.limit) && !(leak && leak->value >= 1);
         };
-        const double least = 0.02 * part.sink->resistance;
-        const auto first = holds(least);
-        if (!first || !*first) return;
-        const auto found = bound_between(least, part.sink->resistance, holds);
+        const auto found = bound_between(0.02 * part.sink->resistance, part.sink->resistance, holds, finding.stress ? &finding.stress->at : &part.top);
         if (!found) return;
         better.at_most = *found;
     } else if (heat && finding.stress && part.sink->power > 0) {

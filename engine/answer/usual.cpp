@@ -58,16 +58,29 @@ double rounded_up(double value, int digits) {
     return std::ceil(value * scale - 1e-6) / scale;
 }
 
-std::optional<double> bound_between(double holding, double breaking, const std::function<std::optional<bool>(double)>& holds) {
-    if (!(holding > 0) || !(breaking > 0)) return std::nullopt;
-    double good = std::log(holding), bad = std::log(breaking);
-    while (std::abs(bad - good) > 0.005) {
-        const double middle = 0.5 * (good + bad);
-        const auto answer = holds(std::exp(middle));
-        if (!answer) return std::nullopt;
-        (*answer ? good : bad) = middle;
+std::optional<double> bound_between(double harmless, double harmful, const HoldsAt& holds, const At* point) {
+    if (!(harmless > 0) || !(harmful > 0)) return std::nullopt;
+    const auto bisect = [&](double good, double bad, const At* only) -> std::optional<double> {
+        double a = std::log(good), b = std::log(bad);
+        while (std::abs(b - a) > 0.005) {
+            const double middle = 0.5 * (a + b);
+            const auto answer = holds(std::exp(middle), only);
+            if (!answer) return std::nullopt;
+            (*answer ? a : b) = middle;
+        }
+        return std::exp(a);
+    };
+    double bad = harmful;
+    if (point != nullptr && holds(harmless, point) == std::optional(true) && holds(harmful, point) == std::optional(false)) {
+        const auto found = bisect(harmless, harmful, point);
+        if (found && holds(*found, nullptr) == std::optional(true)) return found;
+        if (found) bad = *found;
+    } else if (point != nullptr && holds(harmless, point) == std::optional(false)) {
+        return std::nullopt;
     }
-    return std::exp(good);
+    if (holds(harmless, nullptr) != std::optional(true)) return std::nullopt;
+    if (bad == harmful && holds(harmful, nullptr) != std::optional(false)) return std::nullopt;
+    return bisect(harmless, bad, nullptr);
 }
 
 }  // namespace binwright
