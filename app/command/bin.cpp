@@ -183,6 +183,7 @@ Figure figure_of(const std::string& option, const std::string& value, Family fam
         for (Fault& fault : error.faults) {
             fault.place.file = option;
             if (fault.place.column > 0) fault.place.column += pair.offset;
+            fault.message = "in \"" + value + "\"" + (fault.place.column > 0 ? " at character " + std::to_string(fault.place.column) : "") + ": " + fault.message;
             if (fault.field.empty()) fault.field = std::string(info(*symbol).name);
         }
         throw InputError(error.faults);

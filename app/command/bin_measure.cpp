@@ -21,7 +21,7 @@ int run(Session& session, const Call& call) {
         std::vector<Fault> faults;
         for (const std::string& text : call.list("FIGURE")) {
             try {
-                Figure figure = figure_of("FIGURE", text, type.part.family, Known::measured);
+                Figure figure = figure_of("", text, type.part.family, Known::measured);
                 figure.date = date;
                 figure.method = method;
                 given.push_back(figure);
@@ -30,7 +30,7 @@ int run(Session& session, const Call& call) {
             }
         }
         if (!faults.empty()) throw InputError(faults);
-        refuse_implausible(session, type.part, given, "FIGURE");
+        refuse_implausible(session, type.part, given, "");
         for (const Figure& figure : given) {
             const ReadingRecord reading{.id = 0, .lot_id = lot.id, .figure = figure};
             all.push_back(reading);

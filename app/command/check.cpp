@@ -52,7 +52,7 @@ int run(Session& session, const Call& call) {
                      {"title", converter.title},
                      {"topology", std::string(converter.topology->name)},
                      {"rulebook", book.name},
-                     {"bin", job.bin.name},
+                     {"bin", job.bin ? Json(job.bin->name) : Json()},
                      {"verdict", std::string(to_string(report.verdict))},
                      {"summary", summary(report, converter)}};
         body["seats"] = Json::array();

@@ -31,10 +31,10 @@ int run(Session& session, const Call& call) {
                                "headroom, cool, life or thrift"});
     const std::optional<int> most = call.whole("--most", 1, 1000000);
     const Rulebook book = rulebook_for(session);
-    Job job = job_for(session, *call.text("FILE"));
+    Job job = job_for(session, *call.text("FILE"), true);
     const Converter& converter = job.setup.converter;
     const Seat seat = seat_of(converter, *call.text("SEAT"));
-    const std::vector<Lot> lots = job.bin.store.engine_lots(family_of(seat));
+    const std::vector<Lot> lots = job.bin->store.engine_lots(family_of(seat));
     std::vector<Candidate> candidates = rank(job.setup, seat, lots, book, *prefer);
 
     const auto count = [&](Verdict verdict) {
@@ -50,7 +50,7 @@ int run(Session& session, const Call& call) {
                      {"seat", std::string(to_string(seat))},
                      {"reference", converter.reference(seat)},
                      {"rulebook", book.name},
-                     {"bin", job.bin.name},
+                     {"bin", job.bin->name},
                      {"prefer", std::string(to_string(*prefer))},
                      {"counts", {{"holds", holding}, {"unproven", unproven}, {"not covered", foreign}, {"rejected", rejected}}}};
         body["candidates"] = Json::array();
@@ -71,10 +71,10 @@ int run(Session& session, const Call& call) {
     }
     session.out << heading(converter.title, session.colour) << ": " << spaced(to_string(seat)) << ' ' << converter.reference(seat) << '\n';
     if (all == 0) {
-        session.out << "no " << to_string(family_of(seat)) << " lots in " << job.bin.name << '\n';
+        session.out << "no " << to_string(family_of(seat)) << " lots in " << job.bin->name << '\n';
         return status;
     }
-    session.out << counted(all, "lot") << " of " << job.bin.name << " by " << to_string(*prefer) << ", rulebook " << book.name << ": "
+    session.out << counted(all, "lot") << " of " << job.bin->name << " by " << to_string(*prefer) << ", rulebook " << book.name << ": "
                 << holding << (holding == 1 ? " holds, " : " hold, ") << unproven << " unproven, " << rejected << " rejected";
     if (foreign) session.out << ", " << foreign << " not covered";
     session.out << "\n\n";

@@ -176,44 +176,51 @@ Rulebook rulebook_for(Session& session) {
     return read_rulebook(read_text(session, *session.rulebook), *session.rulebook);
 }
 
-Job job_for(Session& session, const std::string& path) {
-    const ConverterText text{path, read_text(session, path)};
-    Converter converter = read_converter(text.text, path, session.with);
-    OpenBin bin = bin_for_reading(session, &text);
-    std::vector<Fault> faults;
-    for (const auto& [seat, config] : converter.seats)
-        for (const FittedConfig& fitted : config.fitted) {
-            std::string why;
-            try {
-                if (const std::optional<Lot> found = bin.store.engine_lot(fitted.lot)) {
-                    // A label is a running number of one bin: in another bin it may be on something else.
-                    for (const Lot& lot : config.as_fitted)
-                        if (lot.label == fitted.lot && lot.part.name != found->part.name)
-                            note(session, to_string(Fault{fitted.place, "", fitted.lot + " in this bin (" + bin.name + ") is " + found->part.name + ", and the file was saved with " +
-                                                                                 lot.part.name + "; judged is the bin's", ""}));
-                    continue;
-                }
-            } catch (const EditRefused& refused) {
-                why = refused.what();
-            }
-            bool carried = false;
-            for (const Lot& lot : config.as_fitted) carried = carried || lot.label == fitted.lot || lot.part.name == fitted.lot;
-            if (carried) continue;
-            faults.push_back({fitted.place, "seat." + std::string(to_string(seat)) + ".fitted",
-                              why.empty() ? "\"" + fitted.lot + "\" is neither a lot nor a part type of the bin (" + bin.name + ")" +
-                                                (bin.on_disk ? "; lots of the demo are in the demo's own bin: --bin demo" : "")
-                                          : why + " (bin: " + bin.name + ")",
-                              "a lot label or the name of a part type"});
-        }
-    if (!faults.empty()) throw InputError(faults);
-    Setup setup = assemble(std::move(converter), [&](const std::string& name) -> std::optional<Lot> {
-        try {
-            return bin.store.engine_lot(name);
-        } catch (const EditRefused&) {
+namespace {
+
+/// What is wrong with one fitted name, as a fault at its place; empty when the bin, or the file itself, has the part.
+std::optional<Fault> not_found(Session& session, const OpenBin& bin, Seat seat, const SeatConfig& config, const FittedConfig& fitted) {
+    std::string why = "\"" + fitted.lot + "\" is neither a lot nor a part type of the bin (" + bin.name + ")" +
+                      (bin.on_disk ? "; the demo's lots are in a bin of their own: --bin demo" : "");
+    const Lot* carried = nullptr;
+    for (const Lot& lot : config.as_fitted)
+        if (lot.label == fitted.lot || lot.part.name == fitted.lot) carried = &lot;
+    try {
+        if (const std::optional<Lot> found = bin.store.engine_lot(fitted.lot)) {
+            // A label is a running number of one bin: in another bin it may be on something else.
+            if (carried && carried->part.name != found->part.name)
+                note(session, to_string(Fault{fitted.place, "", fitted.lot + " in this bin (" + bin.name + ") is " + found->part.name + ", and the file was saved with " +
+                                                                    carried->part.name + "; judged is the bin's", ""}));
             return std::nullopt;
         }
+    } catch (const EditRefused& refused) {
+        why = std::string(refused.what()) + " (bin: " + bin.name + ")";
+    }
+    if (carried) return std::nullopt;
+    return Fault{fitted.place, "seat." + std::string(to_string(seat)) + ".fitted", why, "a lot label or the name of a part type"};
+}
+
+}  // namespace
+
+Job job_for(Session& session, const std::string& path, bool needs_bin) {
+    const ConverterText text{path, read_text(session, path)};
+    Converter converter = read_converter(text.text, path, session.with);
+    Job job;
+    for (const auto& [seat, config] : converter.seats) needs_bin = needs_bin || !config.fitted.empty();
+    if (needs_bin) job.bin = bin_for_reading(session, &text);
+    std::vector<Fault> faults;
+    for (const auto& [seat, config] : converter.seats)
+        for (const FittedConfig& fitted : config.fitted)
+            if (const std::optional<Fault> fault = not_found(session, *job.bin, seat, config, fitted)) faults.push_back(*fault);
+    if (!faults.empty()) throw InputError(faults);
+    job.setup = assemble(std::move(converter), [&](const std::string& name) -> std::optional<Lot> {
+        try {
+            return job.bin->store.engine_lot(name);
+        } catch (const EditRefused&) {
+            return std::nullopt;  // a saved file carries its figures
+        }
     });
-    return {std::move(setup), std::move(bin)};
+    return job;
 }
 
 Seat seat_of(const Converter& converter, const std::string& text) {

@@ -64,9 +64,9 @@ struct ConverterText {
 /// A converter read with --with, and its fitted parts found in its bin.
 struct Job {
     Setup setup;
-    OpenBin bin;
+    std::optional<OpenBin> bin;  ///< opened where the converter names parts of one, or the command needs one
 };
-[[nodiscard]] Job job_for(Session& session, const std::string& path);
+[[nodiscard]] Job job_for(Session& session, const std::string& path, bool needs_bin = false);
 
 /// A seat of this converter. @throws InputError naming those it has
 [[nodiscard]] Seat seat_of(const Converter& converter, const std::string& text);
