@@ -1,0 +1,187 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// Lots: their labels, what the engine is to judge of them, finding them, and the edits people make of them.
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <sstream>
+
+#include "catalog/store.hpp"
+
+namespace binwright {
+namespace {
+
+std::string folded(std::string_view text) {
+    std::string out(text);
+    for (char& c : out)
+        if (c >= 'A' && c <= 'Z') c = static_cast<char>(c - 'A' + 'a');
+    return out;
+}
+
+/// Whether a measurement says less good than another, by the symbol's own direction.
+bool worse(const Figure& a, const Figure& b) {
+    switch (info(a.symbol).better) {
+        case Better::higher: return a.value.worst < b.value.worst;
+        case Better::lower: return a.value.worst > b.value.worst;
+        default: return false;
+    }
+}
+
+/// Measurements of one figure under different conditions are different figures.
+bool same_conditions(const Figure& a, const Figure& b) { return a.symbol == b.symbol && a.at == b.at && a.both_legs == b.both_legs; }
+
+/// Why a reading lies outside what the type's own figure allows; empty when it does not.
+std::string outside_type(const Figure& reading, const Part& part) {
+    for (const Figure& figure : part.figures) {
+        if (figure.symbol != reading.symbol || figure.known == Known::kind) continue;
+        if (figure.column != Column::maximum && figure.column != Column::minimum && !info(figure.symbol).rating) continue;
+        if (!(figure.at == reading.at) && !info(figure.symbol).rating) continue;
+        const Better better = info(figure.symbol).better;
+        const bool bad = (better == Better::lower && reading.value.worst > figure.value.worst) ||
+                         (better == Better::higher && reading.value.worst < figure.value.worst);
+        if (bad)
+            return fmt::format("{} measured {}, and the type's limit is {}", info(figure.symbol).name,
+                               format_quantity(reading.value.worst, info(figure.symbol).unit), format_quantity(figure.value.worst, info(figure.symbol).unit));
+    }
+    return "";
+}
+
+bool matches_comparison(const Lot& lot, std::string_view piece, bool& understood) {
+    for (const std::string_view op : {">=", "<=", "=", ">", "<"}) {
+        const std::size_t at = piece.find(op);
+        if (at == std::string_view::npos || at == 0) continue;
+        const auto symbol = find_symbol(piece.substr(0, at), lot.part.family);
+        if (!symbol) {
+            for (const Family family : {Family::switch_, Family::rectifier, Family::capacitor}) understood |= find_symbol(piece.substr(0, at), family).has_value();
+            return false;
+        }
+        understood = true;
+        const double wanted = parse_quantity(piece.substr(at + op.size()), info(*symbol).unit);
+        for (const Figure& figure : lot.part.figures) {
+            if (figure.symbol != *symbol) continue;
+            const double value = figure.value.worst;
+            const double slack = 1e-9 * std::abs(wanted);
+            if (op == ">=" ? value >= wanted - slack : op == "<=" ? value <= wanted + slack : op == ">" ? value > wanted + slack
+                : op == "<" ? value < wanted - slack : std::abs(value - wanted) <= slack)
+                return true;
+        }
+        return false;
+    }
+    return false;
+}
+
+}  // namespace
+
+std::string lot_label(std::int64_t number) {
+    // 23 is prime and none of 1 … 9, 9·10^k is divisible by it: changing one digit, or swapping neighbours, changes the rest.
+    constexpr std::string_view letters = "ABCDEFGHJKLMNPRSTUVWXYZ";
+    static_assert(letters.size() == 23);
+    return std::to_string(number) + "-" + letters[static_cast<std::size_t>(number % 23)];
+}
+
+Lot as_lot(const PartRecord& part, const LotRecord& lot, const std::vector<ReadingRecord>& readings) {
+    Lot result;
+    result.label = lot_label(lot.number);
+    result.part = part.part;
+    result.origin = lot.origin;
+    result.count = lot.count;
+    std::vector<Figure> counted;
+    for (const ReadingRecord& reading : readings) {
+        if (reading.set_aside) continue;
+        if (std::string why = outside_type(reading.figure, part.part); !why.empty() && !result.suspect) {
+            result.suspect = true;
+            result.suspect_why = std::move(why);
+        }
+        if (info(reading.figure.symbol).rating) continue;  // a rating is what the type promises, not what one part bore once
+        Figure figure = reading.figure;
+        figure.known = Known::measured;
+        const auto found = std::find_if(counted.begin(), counted.end(), [&](const Figure& other) { return same_conditions(figure, other); });
+        if (found == counted.end()) counted.push_back(std::move(figure));
+        else if (worse(figure, *found)) *found = std::move(figure);
+    }
+    for (const Figure& figure : counted) {
+        // A measurement takes the place of estimates of its kind altogether, and of a published figure under the same conditions.
+        std::erase_if(result.part.figures, [&](const Figure& other) {
+            return other.symbol == figure.symbol && (other.known == Known::kind || same_conditions(other, figure));
+        });
+    }
+    result.part.figures.insert(result.part.figures.begin(), counted.begin(), counted.end());
+    return result;
+}
+
+std::vector<Lot> Store::engine_lots(std::optional<Family> family) const {
+    std::map<std::int64_t, PartRecord> types;
+    for (PartRecord& part : parts()) types.emplace(part.id, std::move(part));
+    std::vector<Lot> result;
+    for (const LotRecord& lot : lots()) {
+        const PartRecord& part = types.at(lot.part_id);
+        if (family && part.part.family != *family) continue;
+        result.push_back(as_lot(part, lot, readings(lot.id)));
+    }
+    return result;
+}
+
+std::optional<Lot> Store::engine_lot(std::string_view label_or_part_name) const {
+    if (const auto lot = lot_labelled(label_or_part_name)) return as_lot(*part(lot->part_id), *lot, readings(lot->id));
+    if (const auto type = part_named(label_or_part_name)) {
+        Lot lot;
+        lot.part = type->part;
+        return lot;
+    }
+    return std::nullopt;
+}
+
+std::vector<LotRecord> Store::find(std::string_view query) const {
+    std::map<std::int64_t, PartRecord> types;
+    for (PartRecord& part : parts()) types.emplace(part.id, std::move(part));
+    std::vector<std::string> pieces;
+    std::istringstream words{std::string(query)};
+    for (std::string piece; words >> piece;) pieces.push_back(piece);
+    std::vector<LotRecord> found;
+    for (const LotRecord& record : lots()) {
+        const PartRecord& type = types.at(record.part_id);
+        const Lot lot = as_lot(type, record, readings(record.id));
+        std::string text = lot.label + " " + type.part.name + " " + record.place + " " + record.note + " " + record.donor + " " + record.date_code + " " +
+                           std::string(to_string(record.origin)) + " " + std::string(to_string(type.part.family));
+        for (const auto& [name, value] : type.part.attributes) text += " " + value;
+        for (const Figure& figure : lot.part.figures)
+            text += " " + std::string(info(figure.symbol).name) + " " + format_quantity(figure.value.worst, info(figure.symbol).unit);
+        text = folded(text);
+        const bool all = std::all_of(pieces.begin(), pieces.end(), [&](const std::string& piece) {
+            const std::size_t colon = piece.find(':');
+            if (colon != std::string::npos) {
+                const std::string key = folded(piece.substr(0, colon)), value = folded(piece.substr(colon + 1));
+                if (key == "family") return folded(to_string(type.part.family)) == value;
+                if (key == "origin") return folded(to_string(record.origin)) == value;
+                if (key == "place") return folded(record.place).find(value) != std::string::npos;
+                if (key == "technology") return folded(attribute(type.part, "technology")) == value;
+            }
+            bool understood = false;
+            if (matches_comparison(lot, piece, understood)) return true;
+            return !understood && text.find(folded(piece)) != std::string::npos;
+        });
+        if (all) found.push_back(record);
+    }
+    return found;
+}
+
+Edit take_edit(const Store& store, const LotRecord& lot, int count) {
+    (void)store;
+    if (count < 1) throw EditRefused(fmt::format("{} pieces cannot be taken", count));
+    if (count > lot.count)
+        throw EditRefused(fmt::format("{} holds {} {}; {} cannot be taken", lot_label(lot.number), lot.count, lot.count == 1 ? "piece" : "pieces", count));
+    LotRecord after = lot;
+    after.count -= count;
+    return {fmt::format("take {} of {}", count, lot_label(lot.number)), {Change<LotRecord>{lot, after}}};
+}
+
+Edit put_edit(const Store& store, const LotRecord& lot, int count, const std::string& place) {
+    (void)store;
+    if (count < 1) throw EditRefused(fmt::format("{} pieces cannot be put", count));
+    LotRecord after = lot;
+    after.count += count;
+    if (!place.empty()) after.place = place;
+    return {fmt::format("put {} to {}", count, lot_label(lot.number)), {Change<LotRecord>{lot, after}}};
+}
+
+}  // namespace binwright
