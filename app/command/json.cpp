@@ -141,6 +141,21 @@ Json to_json(const Figure& figure) {
 
 namespace {
 
+std::string_view name_of(Ground ground) {
+    switch (ground) {
+        case Ground::rule: return "rule";
+        case Ground::nothing_fitted: return "nothing_fitted";
+        case Ground::bare_element: return "bare_element";
+        case Ground::not_covered: return "not_covered";
+        case Ground::no_rule: return "no_rule";
+        case Ground::suspect: return "suspect";
+        case Ground::unmeasured: return "unmeasured";
+        case Ground::expired: return "expired";
+        case Ground::outside_model: return "outside_model";
+    }
+    return "";
+}
+
 /// The unit of what a remedy bounds, as JSON tells it: a temperature in °C, all else in base units.
 Json remedy_number(const std::optional<double>& value, const Remedy& remedy) { return number(value, remedy.unit); }
 
@@ -153,21 +168,25 @@ Json to_json(const Remedy& remedy) {
     out["usual"] = remedy_number(remedy.usual, remedy);
     const Json at = to_json(remedy.at);
     if (!at.empty()) out["at"] = at;
+    if (remedy.accuracy) out["accuracy"] = number(remedy.accuracy);
     out["text"] = remedy_text(remedy);
     return out;
 }
 
 Json to_json(const Finding& finding) {
-    const StressInfo& about = info(finding.rule.stress);
+    const StressInfo& about = info(finding.stress ? finding.stress->stress : finding.rule.stress);
     const Wording wording = words(finding);
     Json out;
     if (!finding.of_converter) out["seat"] = std::string(to_string(finding.seat));
-    out["rule"] = finding.rule.id;
+    const bool by_rule = !finding.rule.id.empty();
+    out["rule"] = by_rule ? Json(finding.rule.id) : Json();
     out["rulebook"] = finding.book;
-    out["quantity"] = std::string(about.name);
-    out["unit"] = std::string(unit_symbol(about.unit));
+    out["ground"] = std::string(name_of(finding.ground));
+    out["quantity"] = by_rule || finding.stress ? Json(std::string(about.name)) : Json();
+    out["unit"] = by_rule || finding.stress ? Json(std::string(unit_symbol(about.unit))) : Json();
     out["stress"] = finding.stress ? number(finding.stress->value, about.unit) : Json();
     out["rating"] = number(finding.rating, finding.rule.rating ? info(*finding.rule.rating).unit : about.unit);
+    if (finding.printed) out["printed"] = number(finding.printed, finding.rule.rating ? info(*finding.rule.rating).unit : about.unit);
     out["limit"] = number(finding.limit, about.unit);
     out["used"] = number(finding.used);
     out["left"] = number(finding.left);
@@ -177,6 +196,11 @@ Json to_json(const Finding& finding) {
     out["made_of"] = finding.stress ? named_sum(*finding.stress, about.unit) : Json::object();
     out["rests_on"] = finding.rests_on;
     if (!finding.missing.empty()) out["missing"] = finding.missing;
+    if (!finding.why.empty()) out["why"] = finding.why;
+    if (!finding.told.empty()) {
+        out["told"] = Json::array();
+        for (const Figure& figure : finding.told) out["told"].push_back(to_json(figure));
+    }
     if (finding.bound) {
         const SymbolInfo& figure = info(finding.bound->figure);
         Json bound = {{"figure", std::string(figure.name)}};
