@@ -24,7 +24,7 @@ constexpr StressRow kRows[] = {
     {{Stress::voltage_average, "voltage_average", "mean voltage", Unit::volt}, no, no, yes, no, {}, no},
     {{Stress::voltage_peak_repetitive, "voltage_peak_repetitive", "repetitive peak voltage", Unit::volt}, yes, yes, yes, no, kCapacitor, no},
     {{Stress::voltage_peak_single, "voltage_peak_single", "single peak voltage", Unit::volt}, yes, yes, yes, no, {}, yes},
-    {{Stress::voltage_reverse, "voltage_reverse", "voltage in reverse", Unit::volt}, no, no, yes, no, kCapacitor, yes},
+    {{Stress::voltage_reverse, "voltage_reverse", "voltage in reverse", Unit::volt}, no, no, yes, no, {}, yes},
     {{Stress::gate_voltage, "gate_voltage", "gate voltage", Unit::volt}, yes, no, no, no, {}, no},
     {{Stress::drive_voltage_lowest, "drive_voltage_lowest", "lowest drive voltage", Unit::volt}, yes, no, no, no, kGate, no},
     {{Stress::current_average, "current_average", "average current", Unit::ampere}, yes, yes, no, no, {}, no},

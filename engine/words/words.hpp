@@ -19,6 +19,9 @@ struct Wording {
 };
 [[nodiscard]] Wording words(const Finding& finding);
 
+/// A rule's bound: "80 % of U_R", "25 K below T_jmax", "hot spot at most 85 °C", "at least the life required".
+[[nodiscard]] std::string rule_text(const Rule& rule);
+
 /// Line, because, rule, to mend / to settle as a block of text with aligned keywords, as style of the command line.
 [[nodiscard]] std::string block(const Finding& finding);
 
