@@ -286,7 +286,7 @@ Json lot_list(const Store& store, const std::vector<LotRecord>& lots) {
     std::map<std::int64_t, Part> parts;
     for (const PartRecord& record : store.parts()) parts[record.id] = record.part;
     Json list = Json::array();
-    for (const LotRecord& lot : lots) list.push_back(to_json(lot, parts[lot.part_id]));
+    for (const LotRecord& lot : lots) list.push_back(json_of(lot, parts[lot.part_id]));
     return list;
 }
 

@@ -97,6 +97,7 @@ int run(Session& session, const Call& call) {
                         "the name of a type, or a family and a name");
         }
         edit.changes.emplace_back(Change<PartRecord>{std::nullopt, new_type(session, call, *family, name)});
+        row.part_id = -1;  // the first change of this edit
         edit.changes.emplace_back(Change<LotRecord>{std::nullopt, row});
         return edit;
     });

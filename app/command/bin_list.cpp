@@ -25,7 +25,7 @@ int run(Session& session, const Call& call) {
             for (const PartRecord& record : parts) {
                 Json entry = {{"part", record.part.name}, {"family", std::string(to_string(record.part.family))}, {"starter", record.starter}, {"attributes", record.part.attributes}};
                 entry["figures"] = Json::array();
-                for (const Figure& figure : record.part.figures) entry["figures"].push_back(to_json(figure));
+                for (const Figure& figure : record.part.figures) entry["figures"].push_back(json_of(figure));
                 list.push_back(std::move(entry));
             }
             print_json(session, "bin list", {{"bin", bin.name}, {"types", list}});

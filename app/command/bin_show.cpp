@@ -27,7 +27,7 @@ std::string figure_rows(const Part& part) {
 int show_type(Session& session, const OpenBin& bin, const PartRecord& record) {
     if (session.json) {
         Json figures = Json::array();
-        for (const Figure& figure : record.part.figures) figures.push_back(to_json(figure));
+        for (const Figure& figure : record.part.figures) figures.push_back(json_of(figure));
         print_json(session, "bin show", {{"bin", bin.name}, {"part", record.part.name}, {"family", std::string(to_string(record.part.family))},
                                          {"starter", record.starter}, {"attributes", record.part.attributes}, {"figures", figures}});
         return 0;
@@ -49,15 +49,15 @@ int run(Session& session, const Call& call) {
     const Lot judged = as_lot(type, lot, readings);
     if (session.json) {
         Json body = {{"bin", bin.name}};
-        for (const auto& [key, value] : to_json(lot, type.part).items()) body[key] = value;
+        for (const auto& [key, value] : json_of(lot, type.part).items()) body[key] = value;
         body["suspect"] = judged.suspect;
         if (judged.suspect) body["suspect_why"] = judged.suspect_why;
         body["attributes"] = type.part.attributes;
         body["figures"] = Json::array();
-        for (const Figure& figure : judged.part.figures) body["figures"].push_back(to_json(figure));
+        for (const Figure& figure : judged.part.figures) body["figures"].push_back(json_of(figure));
         body["readings"] = Json::array();
         for (const ReadingRecord& reading : readings) {
-            Json entry = to_json(reading.figure);
+            Json entry = json_of(reading.figure);
             entry["reading"] = reading.id;
             entry["set_aside"] = reading.set_aside;
             body["readings"].push_back(std::move(entry));

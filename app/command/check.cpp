@@ -56,10 +56,10 @@ int run(Session& session, const Call& call) {
                      {"verdict", std::string(to_string(report.verdict))},
                      {"summary", summary(report, converter)}};
         body["seats"] = Json::array();
-        for (const SeatReport& seat : report.seats) body["seats"].push_back(to_json(seat));
+        for (const SeatReport& seat : report.seats) body["seats"].push_back(json_of(seat));
         body["converter"] = Json::array();
-        for (const Finding& finding : report.converter) body["converter"].push_back(to_json(finding));
-        body["hottest"] = to_json(report.exposure.hottest);
+        for (const Finding& finding : report.converter) body["converter"].push_back(json_of(finding));
+        body["hottest"] = json_of(report.exposure.hottest);
         body["efficiency_total"] = number(report.exposure.efficiency_total);
         body["losses"] = Json::array();
         for (const Loss& loss : report.exposure.losses)
@@ -74,14 +74,12 @@ int run(Session& session, const Call& call) {
     }
     session.out << heading(converter.title, session.colour) << '\n' << folded(summary(report, converter)) << "\n\n";
     for (const SeatReport& seat : report.seats)
-        session.out << with_verdict_painted(line(seat), seat.verdict, session.colour) << '\n';
+        session.out << with_verdict_painted(folded_lines(line(seat), 5), seat.verdict, session.colour);
     if (session.quiet) return status;
     const auto blocks = [&](const std::vector<Finding>& findings) {
         for (const Finding& finding : findings)
             if (finding.verdict != Verdict::holds) {
-                std::string text = block(finding);
-                while (text.ends_with('\n')) text.pop_back();
-                session.out << '\n' << with_verdict_painted(text, finding.verdict, session.colour) << '\n';
+                session.out << '\n' << with_verdict_painted(folded_lines(block(finding), 17), finding.verdict, session.colour);
             }
     };
     blocks(report.converter);

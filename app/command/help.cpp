@@ -28,7 +28,7 @@ int figures(Session& session) {
             if (row.in_rectifier) families.push_back("rectifier");
             if (row.in_capacitor) families.push_back("capacitor");
             list.push_back({{"symbol", std::string(row.name)}, {"plain", std::string(row.plain)}, {"meaning", std::string(row.meaning)},
-                            {"unit", std::string(unit_symbol(row.unit))}, {"families", families}, {"rating", row.rating}, {"ages", row.ages}, {"usual", to_json(row.usual)}});
+                            {"unit", std::string(unit_symbol(row.unit))}, {"families", families}, {"rating", row.rating}, {"ages", row.ages}, {"usual", json_of(row.usual)}});
         }
         print_json(session, "help figures", {{"figures", list}});
         return 0;

@@ -81,15 +81,15 @@ Json number(const std::optional<double>& value) { return value ? number(*value) 
 Json number(double value, Unit unit) { return number(unit == Unit::celsius ? value - kCelsiusZero : value); }
 Json number(const std::optional<double>& value, Unit unit) { return value ? number(*value, unit) : Json(); }
 
-Json to_json(const At& at) {
+Json json_of(const At& at) {
     Json out = Json::object();
     for (const OperatingInfo& dimension : kOperating) out[std::string(dimension.key)] = number(at.get(dimension.quantity), dimension.unit);
     return out;
 }
 
-Json to_json(const ElectricalPoint& point, const Topology& topology, bool unregulated) {
+Json json_of(const ElectricalPoint& point, const Topology& topology, bool unregulated) {
     const SteadyState& s = point.state;
-    Json out = to_json(point.at);
+    Json out = json_of(point.at);
     if (unregulated) out["output_voltage"] = number(s.output_voltage_average);
     out["reached"] = s.reached;
     if (!s.reached) {
@@ -114,7 +114,7 @@ Json to_json(const ElectricalPoint& point, const Topology& topology, bool unregu
     return out;
 }
 
-Json to_json(const Conditions& conditions) {
+Json json_of(const Conditions& conditions) {
     Json out = Json::object();
     if (conditions.voltage) out["voltage"] = number(*conditions.voltage);
     if (conditions.current) out["current"] = number(*conditions.current);
@@ -123,7 +123,7 @@ Json to_json(const Conditions& conditions) {
     return out;
 }
 
-Json to_json(const Figure& figure) {
+Json json_of(const Figure& figure) {
     const SymbolInfo& about = info(figure.symbol);
     Json out = {{"symbol", std::string(about.name)},
                 {"best", number(figure.value.best, about.unit)},
@@ -132,7 +132,7 @@ Json to_json(const Figure& figure) {
                 {"unit", std::string(unit_symbol(about.unit))},
                 {"known", std::string(to_string(figure.known))},
                 {"column", std::string(to_string(figure.column))},
-                {"at", to_json(figure.at)}};
+                {"at", json_of(figure.at)}};
     if (figure.both_legs) out["both_legs"] = true;
     if (!figure.date.empty()) out["date"] = figure.date;
     if (!figure.method.empty()) out["method"] = figure.method;
@@ -161,19 +161,19 @@ Json remedy_number(const std::optional<double>& value, const Remedy& remedy) { r
 
 }  // namespace
 
-Json to_json(const Remedy& remedy) {
+Json json_of(const Remedy& remedy) {
     Json out = {{"do", std::string(to_string(remedy.action))}, {"figure", remedy.figure}};
     if (remedy.at_least) out["at_least"] = remedy_number(remedy.at_least, remedy);
     if (remedy.at_most) out["at_most"] = remedy_number(remedy.at_most, remedy);
     out["usual"] = remedy_number(remedy.usual, remedy);
-    const Json at = to_json(remedy.at);
+    const Json at = json_of(remedy.at);
     if (!at.empty()) out["at"] = at;
     if (remedy.accuracy) out["accuracy"] = number(remedy.accuracy);
     out["text"] = remedy_text(remedy);
     return out;
 }
 
-Json to_json(const Finding& finding) {
+Json json_of(const Finding& finding) {
     const StressInfo& about = info(finding.stress ? finding.stress->stress : finding.rule.stress);
     const Wording wording = words(finding);
     Json out;
@@ -192,21 +192,21 @@ Json to_json(const Finding& finding) {
     out["left"] = number(finding.left);
     out["headroom"] = number(finding.headroom);
     out["verdict"] = std::string(to_string(finding.verdict));
-    out["at"] = finding.stress ? to_json(finding.stress->at) : Json();
+    out["at"] = finding.stress ? json_of(finding.stress->at) : Json();
     out["made_of"] = finding.stress ? named_sum(*finding.stress, about.unit) : Json::object();
     out["rests_on"] = finding.rests_on;
     if (!finding.missing.empty()) out["missing"] = finding.missing;
     if (!finding.why.empty()) out["why"] = finding.why;
     if (!finding.told.empty()) {
         out["told"] = Json::array();
-        for (const Figure& figure : finding.told) out["told"].push_back(to_json(figure));
+        for (const Figure& figure : finding.told) out["told"].push_back(json_of(figure));
     }
     if (finding.bound) {
         const SymbolInfo& figure = info(finding.bound->figure);
         Json bound = {{"figure", std::string(figure.name)}};
         if (finding.bound->at_most) bound["at_most"] = number(*finding.bound->at_most, figure.unit);
         if (finding.bound->at_least) bound["at_least"] = number(*finding.bound->at_least, figure.unit);
-        bound["at"] = to_json(finding.bound->at);
+        bound["at"] = json_of(finding.bound->at);
         out["bound"] = bound;
     }
     out["text"] = wording.line;
@@ -214,32 +214,32 @@ Json to_json(const Finding& finding) {
     out["rule_text"] = wording.rule;
     if (!wording.settle.empty()) out["settle"] = wording.settle;
     out["remedies"] = Json::array();
-    for (const Remedy& remedy : finding.remedies) out["remedies"].push_back(to_json(remedy));
+    for (const Remedy& remedy : finding.remedies) out["remedies"].push_back(json_of(remedy));
     return out;
 }
 
-Json to_json(const SeatReport& report) {
+Json json_of(const SeatReport& report) {
     Json out = {{"seat", std::string(to_string(report.seat))},
                 {"reference", report.reference},
                 {"lot", report.lot.empty() ? Json() : Json(report.lot)},
                 {"part", report.part.empty() ? Json() : Json(report.part)},
                 {"verdict", std::string(to_string(report.verdict))},
                 {"findings", Json::array()}};
-    for (const Finding& finding : report.findings) out["findings"].push_back(to_json(finding));
+    for (const Finding& finding : report.findings) out["findings"].push_back(json_of(finding));
     return out;
 }
 
-Json to_json(const Lot& lot) {
+Json json_of(const Lot& lot) {
     Json out = {{"lot", lot.label}, {"part", lot.part.name}, {"family", std::string(to_string(lot.part.family))},
                 {"origin", std::string(to_string(lot.origin))}, {"count", lot.count}, {"suspect", lot.suspect}};
     if (lot.suspect) out["suspect_why"] = lot.suspect_why;
     out["attributes"] = lot.part.attributes;
     out["figures"] = Json::array();
-    for (const Figure& figure : lot.part.figures) out["figures"].push_back(to_json(figure));
+    for (const Figure& figure : lot.part.figures) out["figures"].push_back(json_of(figure));
     return out;
 }
 
-Json to_json(const LotRecord& lot, const Part& part) {
+Json json_of(const LotRecord& lot, const Part& part) {
     return {{"lot", lot_label(lot.number)},    {"part", part.name},   {"family", std::string(to_string(part.family))},
             {"count", lot.count},              {"place", lot.place},  {"origin", std::string(to_string(lot.origin))},
             {"date_code", lot.date_code},      {"donor", lot.donor},  {"note", lot.note}};

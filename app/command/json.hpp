@@ -13,17 +13,17 @@ namespace binwright {
 [[nodiscard]] Json number(double value, Unit unit);
 [[nodiscard]] Json number(const std::optional<double>& value, Unit unit);
 
-[[nodiscard]] Json to_json(const At& at);
+[[nodiscard]] Json json_of(const At& at);
 /// One solved point. `unregulated`: it was run at a duty, and no output voltage was asked for.
-[[nodiscard]] Json to_json(const ElectricalPoint& point, const Topology& topology, bool unregulated);
-[[nodiscard]] Json to_json(const Figure& figure);
-[[nodiscard]] Json to_json(const Conditions& conditions);
-[[nodiscard]] Json to_json(const Finding& finding);
-[[nodiscard]] Json to_json(const SeatReport& report);
-[[nodiscard]] Json to_json(const Lot& lot);
-[[nodiscard]] Json to_json(const Remedy& remedy);
+[[nodiscard]] Json json_of(const ElectricalPoint& point, const Topology& topology, bool unregulated);
+[[nodiscard]] Json json_of(const Figure& figure);
+[[nodiscard]] Json json_of(const Conditions& conditions);
+[[nodiscard]] Json json_of(const Finding& finding);
+[[nodiscard]] Json json_of(const SeatReport& report);
+[[nodiscard]] Json json_of(const Lot& lot);
+[[nodiscard]] Json json_of(const Remedy& remedy);
 
 /// A lot of the bin with its type's name and its own label.
-[[nodiscard]] Json to_json(const LotRecord& lot, const Part& part);
+[[nodiscard]] Json json_of(const LotRecord& lot, const Part& part);
 
 }  // namespace binwright

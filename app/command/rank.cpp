@@ -63,7 +63,7 @@ int run(Session& session, const Call& call) {
                           {"verdict", std::string(to_string(candidate.report.verdict))},
                           {"findings", Json::array()},
                           {"knock_on", candidate.knock_on}};
-            for (const Finding& finding : candidate.report.findings) entry["findings"].push_back(to_json(finding));
+            for (const Finding& finding : candidate.report.findings) entry["findings"].push_back(json_of(finding));
             body["candidates"].push_back(std::move(entry));
         }
         print_json(session, "rank", body);

@@ -24,7 +24,7 @@ Unit unit_of(std::string_view name) {
 Json nested_worst(const ElectricalReport& report) {
     Json out = {{"seats", Json::object()}, {"windings", Json::object()}};
     for (const ElectricalReport::Worst& worst : report.worst) {
-        const Json entry = {{"value", number(worst.value)}, {"at", to_json(worst.at)}};
+        const Json entry = {{"value", number(worst.value)}, {"at", json_of(worst.at)}};
         const std::size_t dot = worst.name.find('.');
         if (dot == std::string::npos) {
             out[worst.name] = entry;
@@ -56,13 +56,13 @@ void print_point(Session& session, const ElectricalPoint& point, const Topology&
     if (s.input_power > 0) session.out << "; efficiency of the network " << format_quantity(s.output_power / s.input_power, Unit::fraction);
     session.out << "\n\n";
     Rows rows;
-    const Json all = to_json(point, topology, unregulated);
+    const Json all = json_of(point, topology, unregulated);
     for (const char* group : {"seats", "windings"})
         for (const auto& [owner, values] : all[group].items()) {
             std::string first = spaced(owner) + (std::string_view(group) == "windings" ? " winding" : "");
             for (const auto& [name, value] : values.items()) {
                 if (!value.is_number()) continue;
-                rows.rows.push_back({std::exchange(first, ""), spaced(name), format_quantity(value.get<double>(), unit_of(name))});
+                rows.rows.push_back({std::exchange(first, ""), spaced(name), format_quantity(value.get<double>(), unit_of(name), 4)});
             }
         }
     session.out << rows.text();
@@ -116,7 +116,7 @@ int run(Session& session, const Call& call) {
     if (session.json) {
         Json body = {{"file", job.setup.converter.file}, {"title", job.setup.converter.title}, {"topology", std::string(topology.name)}};
         body["points"] = Json::array();
-        for (const ElectricalPoint& point : report.points) body["points"].push_back(to_json(point, topology, unregulated));
+        for (const ElectricalPoint& point : report.points) body["points"].push_back(json_of(point, topology, unregulated));
         body["worst"] = nested_worst(report);
         body["assumptions"] = report.assumptions;
         print_json(session, "stress", body);
@@ -132,14 +132,14 @@ int run(Session& session, const Call& call) {
         if (missed) session.out << "; " << counted(missed, "point") << " not reached";
         session.out << "\n\n";
         Rows rows;
-        std::string last;
+        std::string last = "none yet";
         for (const ElectricalReport::Worst& worst : report.worst) {
             const std::size_t dot = worst.name.find('.');
             const std::string owner = dot == std::string::npos ? "" : worst.name.substr(0, dot);
             const std::string name = dot == std::string::npos ? worst.name : worst.name.substr(dot + 1);
-            const std::string first = owner == last ? "" : spaced(owner) + (owner.empty() || find_seat(owner) ? "" : " winding");
+            const std::string first = owner == last ? "" : owner.empty() ? "converter" : spaced(owner) + (find_seat(owner) ? "" : " winding");
             last = owner;
-            rows.rows.push_back({first, spaced(name), format_quantity(worst.value, unit_of(name)), at_text(worst.at)});
+            rows.rows.push_back({first, spaced(name), format_quantity(worst.value, unit_of(name), 4), at_text(worst.at)});
         }
         session.out << rows.text();
         for (const ElectricalPoint& point : report.points)

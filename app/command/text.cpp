@@ -38,6 +38,24 @@ std::string folded(std::string_view text, int start, int hang, int width) {
     return out;
 }
 
+std::string folded_lines(std::string_view text, int hang) {
+    std::string out;
+    while (!text.empty()) {
+        const std::size_t end = text.find('\n');
+        const std::string_view line = text.substr(0, end);
+        text.remove_prefix(end == std::string_view::npos ? text.size() : end + 1);
+        const std::size_t gap = text_width(line) > kTextWidth ? line.rfind("  ") : std::string_view::npos;
+        if (gap == std::string_view::npos) {
+            out += line;
+        } else {
+            const std::string_view front = line.substr(0, gap + 2);
+            out += std::string(front) + folded(line.substr(gap + 2), text_width(front), hang);
+        }
+        out += '\n';
+    }
+    return out;
+}
+
 std::string Rows::text(int indent) const {
     std::vector<int> widths;
     for (const auto& row : rows)

@@ -18,6 +18,9 @@ inline constexpr int kTextWidth = 96;
 /// Folded at spaces; every line after the first begins with `hang` spaces. The first is taken to begin at column `start`.
 [[nodiscard]] std::string folded(std::string_view text, int start = 0, int hang = 0, int width = kTextWidth);
 
+/// Lines whose columns are two spaces apart, each folded in its last column where it is too wide, `hang` deep.
+[[nodiscard]] std::string folded_lines(std::string_view text, int hang);
+
 /// Rows in columns two spaces apart; the last column is folded under itself. Columns named in `right` are right-aligned.
 struct Rows {
     std::vector<std::vector<std::string>> rows;
