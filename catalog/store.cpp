@@ -3,6 +3,7 @@
 
 #include <SQLiteCpp/SQLiteCpp.h>
 #include <sqlite3.h>
+#include <unistd.h>
 
 #include <chrono>
 #include <cstdlib>
@@ -27,6 +28,12 @@ std::string now() {
 int flags(Store::Open how) {
     if (how == Store::Open::create) return SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE;
     return how == Store::Open::existing ? SQLite::OPEN_READWRITE : SQLite::OPEN_READONLY;
+}
+
+/// A reader that may write leaves no files of the write-ahead log behind; where it may not, it reads all the same.
+int flags_here(const std::string& path, Store::Open how) {
+    if (how == Store::Open::read_only && path != ":memory:" && access(path.c_str(), W_OK) == 0) return SQLite::OPEN_READWRITE;
+    return flags(how);
 }
 
 PartRecord part_of(SQLite::Statement& row) {
@@ -70,9 +77,10 @@ struct Store::Inside {
     std::string path;
     SQLite::Database database;
 
-    Inside(const std::string& file, Open how) : path(file), database(file, flags(how), 5000) {
+    Inside(const std::string& file, Open how) : path(file), database(file, flags_here(file, how), 5000) {
         database.exec("PRAGMA foreign_keys = ON");
         prepare_schema(database, file, how != Open::read_only);
+        if (how == Open::read_only) database.exec("PRAGMA query_only = ON");
         if (how != Open::read_only) {
             database.exec("PRAGMA journal_mode = WAL");
             database.exec("PRAGMA synchronous = FULL");

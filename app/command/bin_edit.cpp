@@ -117,7 +117,7 @@ Command bin_edit_command() {
                         {"--attribute", "NAME=VALUE", "of a type; NAME= removes it", true},
                         {"--known", "HOW", "how these figures are known: marked, datasheet, told (else) or kind"},
                         {"--sure", "", "store a value that such a part hardly has"}},
-            .example = "binwright --bin demo bin edit 1 --place \"Shed / A4\" --dry-run",
+            .example = "binwright --bin demo bin edit 101 --place \"Shed / A4\" --dry-run",
             .example_says = "what moving the demo bin's first lot would change",
             .run = run};
 }

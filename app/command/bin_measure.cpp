@@ -57,7 +57,7 @@ Command bin_measure_command() {
                         {"--date", "YYYY-MM-DD", "when (else today)"},
                         {"--method", "TEXT", "with what: \"LCR meter\""},
                         {"--sure", "", "store a value that such a part hardly has"}},
-            .example = "binwright --bin demo bin measure 1 T_jmax=150°C --dry-run",
+            .example = "binwright --bin demo bin measure 113 ESR=38m@100kHz --dry-run",
             .example_says = "what a reading on the demo bin's first lot would add",
             .run = run};
 }

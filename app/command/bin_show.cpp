@@ -49,7 +49,8 @@ int run(Session& session, const Call& call) {
     const Lot judged = as_lot(type, lot, readings);
     if (session.json) {
         Json body = {{"bin", bin.name}};
-        for (const auto& [key, value] : json_of(lot, type.part).items()) body[key] = value;
+        const Json of_lot = json_of(lot, type.part);
+        for (const auto& [key, value] : of_lot.items()) body[key] = value;
         body["suspect"] = judged.suspect;
         if (judged.suspect) body["suspect_why"] = judged.suspect_why;
         body["attributes"] = type.part.attributes;
@@ -96,7 +97,7 @@ Command bin_show_command() {
             .summary = "one lot with its readings, or one part type, with every figure and how it is known",
             .about = "",
             .options = {{"LABEL", "LABEL|TYPE", "a lot's label (417-H; the letter may be left out), or the name of a type", false, true}},
-            .example = "binwright --bin demo bin show 1",
+            .example = "binwright --bin demo bin show 101",
             .example_says = "the demo bin's first lot",
             .run = run};
 }

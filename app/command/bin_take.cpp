@@ -35,7 +35,7 @@ Command bin_take_command() {
             .summary = "take pieces out of a lot",
             .about = "",
             .options = {{"LABEL", "", "the lot", false, true}, {"N", "", "how many (else 1)"}},
-            .example = "binwright --bin demo bin take 1 1 --dry-run",
+            .example = "binwright --bin demo bin take 108 1 --dry-run",
             .example_says = "what taking one piece of the demo bin's first lot would change",
             .run = take};
 }
@@ -45,7 +45,7 @@ Command bin_put_command() {
             .summary = "put pieces back into a lot",
             .about = "",
             .options = {{"LABEL", "", "the lot", false, true}, {"N", "", "how many (else 1)"}, {"--place", "PATH", "and the lot lies there from now on"}},
-            .example = "binwright --bin demo bin put 1 2 --dry-run",
+            .example = "binwright --bin demo bin put 108 2 --dry-run",
             .example_says = "what putting two pieces into the demo bin's first lot would change",
             .run = put};
 }

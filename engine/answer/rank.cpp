@@ -171,8 +171,18 @@ std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot
                         candidate.knock_on.push_back(setup.converter.reference(other) + ": " + std::string(to_string(before->second)) + " becomes " +
                                                      std::string(to_string(verdict)));
                 }
-            } catch (const OutsideModel& error) {
-                Finding finding = ground_finding(Ground::outside_model, error.what());
+            } catch (const std::exception& error) {
+                std::string why = error.what();
+                if (const auto* input = dynamic_cast<const InputError*>(&error)) {
+                    // Only what this lot does not say makes it unproven; what the file lacks is the caller's to mend.
+                    const std::string here_at = "seat." + std::string(to_string(seat));
+                    if (input->faults.empty() || input->faults.front().field != here_at) throw;
+                    why = "its C is not on record, and nothing can be computed without it";
+                } else if (dynamic_cast<const OutsideModel*>(&error) == nullptr) {
+                    throw;
+                }
+                Finding finding = ground_finding(Ground::outside_model, why);
+                if (dynamic_cast<const InputError*>(&error)) finding.verdict = Verdict::unproven;
                 finding.seat = seat;
                 finding.reference = setup.converter.reference(seat);
                 finding.lot = candidate.lot.label;

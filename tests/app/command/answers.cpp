@@ -13,7 +13,7 @@ using nlohmann::json;
 
 namespace {
 
-const std::vector<std::string> kPoint = {"--at", "input_voltage=12V", "--at", "output_voltage=15V", "--at", "output_current=2A", "--at", "ambient=25"};
+const std::vector<std::string> kPoint = {"--at", "input_voltage=12V", "--at", "output_voltage=15V", "--at", "output_current=2A", "--at", "ambient=25 °C"};
 
 std::vector<std::string> with(std::vector<std::string> call, const std::vector<std::string>& more) {
     call.insert(call.end(), more.begin(), more.end());
@@ -117,7 +117,7 @@ TEST_CASE("a flyback lists its magnetising current, and a buck no coupling capac
     CHECK_FALSE(buck.at("windings").contains("magnetising"));
 }
 
-TEST_CASE("a duty runs the converter unregulated; a point out of reach ends in 1 and says what can be had", "[app][stress]") {
+TEST_CASE("a duty runs the converter unregulated, and a point out of reach ends in 1 and says what can be had", "[app][stress]") {
     const Demo folder;
     const Answer run = folder.run({"stress", folder.gauge, "--at", "duty=0.5", "--at", "input_voltage=12V", "--at", "output_current=2A", "--json"});
     CHECK(run.status == 0);
@@ -129,11 +129,11 @@ TEST_CASE("a duty runs the converter unregulated; a point out of reach ends in 1
     CHECK(missed.json().at("points")[0].at("reached") == false);
     CHECK(missed.json().at("points")[0].at("highest_output").get<double>() < 500);
     CHECK(folder.run({"stress", folder.gauge, "--at", "output_voltage=500V"}).out.find("not reached") != std::string::npos);
-    CHECK(folder.run({"stress", folder.gauge, "--at", "inptu_voltage=5V"}).err == "--at: unknown key `inptu_voltage`; did you mean `input_voltage`?\n");
+    CHECK(folder.run({"stress", folder.gauge, "--at", "inptu_voltage=5V"}).err.ends_with("--at: unknown key `inptu_voltage`; did you mean `input_voltage`?\n"));
     CHECK(folder.run({"stress", folder.gauge, "--at", "duty=1.5"}).status == 2);
 }
 
-TEST_CASE("--waveforms writes one period whose mean is the point's", "[app][stress]") {
+TEST_CASE("the option waveforms writes one period whose mean is the point's", "[app][stress]") {
     const Demo folder;
     const Answer answer = folder.run(with({"stress", folder.gauge, "--json", "--waveforms", "waves.csv"}, kPoint));
     REQUIRE(answer.status == 0);
@@ -274,9 +274,10 @@ TEST_CASE("rank ends in 1 where no lot holds and in 3 where the best is unproven
     REQUIRE(folder.run({"bin", "add", "capacitor", "6 V film", "--figure", "C=100uF", "--figure", "U_R=6.3V", "--figure", "ESR=10m", "--figure", "I_R~=5 A @ 100 kHz", "--figure", "T_max=105 °C",
                         "--attribute", "technology=film", "--known", "marked"})
                 .status == 0);
-    CHECK(folder.run({"rank", folder.gauge, "output_capacitor"}).status == 1);
+    REQUIRE(folder.run({"new", "boost", "-o", "plain.toml"}).status == 0);  // bare elements: no lot of the bin is named
+    CHECK(folder.run({"rank", "plain.toml", "output_capacitor"}).status == 1);
     REQUIRE(folder.run({"bin", "add", "capacitor", "63 V film, nothing else known", "--figure", "U_R=63V", "--attribute", "technology=film", "--known", "marked"}).status == 0);
-    const Answer answer = folder.run({"rank", folder.gauge, "output_capacitor", "--json"});
+    const Answer answer = folder.run({"rank", "plain.toml", "output_capacitor", "--json"});
     CHECK(answer.status == 3);
     CHECK(answer.json().at("candidates")[0].at("verdict") == "unproven");
 }
@@ -314,7 +315,7 @@ TEST_CASE("a lot that the bin does not have is named with its place and with the
 
 TEST_CASE("a converter comes through standard input as well", "[app][check]") {
     const Demo folder;
-    const Answer answer = folder.run(with({"stress", "-", "--json"}, kPoint), source_file("app/demo/tide-gauge.toml"));
+    const Answer answer = folder.run(with({"--bin", "demo", "stress", "-", "--json"}, kPoint), source_file("app/demo/tide-gauge.toml"));
     CHECK(answer.status == 0);
     CHECK(folder.run({"check", "-"}, "kind = \"converter\"\n").err.starts_with("-"));
 }
