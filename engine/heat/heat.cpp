@@ -25,6 +25,10 @@ HeatResult settle_heat(const HeatLayout& layout, const HeatLaw& law) {
         if (!sound(seat.own)) throw OutsideModel(fmt::format("a thermal resistance is {:.4g} K/W; it must be 0 or more", seat.own));
     for (const double sink : layout.sinks)
         if (!sound(sink)) throw OutsideModel(fmt::format("a heatsink is {:.4g} K/W; it must be 0 or more", sink));
+    if (!(layout.ambient > 0 && std::isfinite(layout.ambient)))
+        throw OutsideModel(fmt::format("the ambient temperature is {:.4g} K; it must be above 0 K", layout.ambient));
+    if (!(std::isfinite(layout.other_power)))
+        throw OutsideModel(fmt::format("the other losses are {:.4g} W; they must be finite", layout.other_power));
     if (!sound(layout.enclosure)) throw OutsideModel(fmt::format("the enclosure is {:.4g} K/W; it must be 0 or more", layout.enclosure));
 
     Eigen::MatrixXd R(n, n);
@@ -48,7 +52,10 @@ HeatResult settle_heat(const HeatLayout& layout, const HeatLaw& law) {
         for (int i = 0; i < n; ++i) {
             residual(i) = base - result.junction[i];
             for (int j = 0; j < n; ++j) residual(i) += R(i, j) * sources.power[j];
-            if (!std::isfinite(residual(i))) return result;
+            if (!std::isfinite(residual(i))) {
+                if (step == 0) throw OutsideModel(fmt::format("the loss of part {} of {} is not finite at ambient", i + 1, n));
+                return result;
+            }
         }
         if (n == 0 || residual.cwiseAbs().maxCoeff() < 1e-9) {
             result.stable = result.gain < 1;

@@ -42,7 +42,7 @@ struct HeatResult {
 };
 
 /// The fixed point reached from ambient upward: Newton from below, which on losses convex in temperature never passes it.
-/// @throws OutsideModel on negative resistances or powers that are not finite at ambient
+/// @throws OutsideModel on negative resistances, an ambient not above 0 K, or losses that are not finite at ambient
 [[nodiscard]] HeatResult settle_heat(const HeatLayout& layout, const HeatLaw& law);
 
 /// Largest resistance of one sink with which the parts are stable [K/W]; empty when not even an ideal one helps.
