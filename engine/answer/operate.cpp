@@ -107,7 +107,7 @@ Bench bench_of(const Setup& setup, End end, const Allowances& allowances) {
         for (const BankModel& kind : kinds)
             not_included(kind.model.missing, "ESR", fmt::format("{} ESR", bench.setup->converter.reference(seat)));
     const auto& winding = setup.converter.winding;
-    if (winding.primary && !winding.primary->core_loss) bench.not_included.push_back("core loss: none is given for the first winding");
+    if (winding.primary && !winding.primary->core_loss) bench.not_included.push_back("core loss: none is given for the primary winding");
     return bench;
 }
 
@@ -239,8 +239,8 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
             add(name + " winding copper", {}, stress.current_rms * stress.current_rms * copper);
             add(name + " winding core", {}, stress.current_rms * stress.current_rms * (total - copper));
         };
-        winding("first", state.primary, copper_first, circuit.primary.resistance);
-        if (has_secondary(*circuit.topology)) winding("second", state.secondary, copper_second, circuit.secondary.resistance);
+        winding("primary", state.primary, copper_first, circuit.primary.resistance);
+        if (has_secondary(*circuit.topology)) winding("secondary", state.secondary, copper_second, circuit.secondary.resistance);
         const auto bank = [&](Seat seat, const std::vector<CapacitorValues>& values, const CapacitorStress& stress) {
             double power = 0;
             for (std::size_t k = 0; k < values.size() && k < stress.branch_current_rms.size(); ++k)
