@@ -40,7 +40,8 @@ void read_forward(RectifierModel& model, const Part& part, End end, double legs)
         Line line{};
         if (points.size() > 1 && points.back().first > points.front().first) {
             line.resistance = std::max(0.0, (points.back().second - points.front().second) / (points.back().first - points.front().first));
-            line.threshold = points.back().second - line.resistance * points.back().first;
+            for (const auto& [current, volts] : points)  // no figure lies above the line
+                line.threshold = std::max(line.threshold, volts - line.resistance * current);
         } else {
             line.threshold = share * points.front().second;
             line.resistance = (1 - share) * points.front().second / points.front().first;
@@ -70,28 +71,46 @@ void read_leakage(RectifierModel& model, const Part& part, End end, double legs)
         model.missing.push_back("I_R");
         return;
     }
-    // The hottest figure is nearest to where leakage matters.
-    const Figure* main = figures.front();
-    for (const Figure* figure : figures)
-        if (temperature_of(*figure, kRoom) > temperature_of(*main, kRoom)) main = figure;
     const auto amperes = [&](const Figure& figure) { return at_end(figure.value, end) * (figure.both_legs ? legs / 2 : legs); };
-    model.leakage = amperes(*main);
-    model.leakage_temperature = temperature_of(*main, kRoom);
     const auto rated = end_value(part, Symbol::V_RRM, End::typical);
     const auto volts = [&](const Figure& figure) { return figure.at.voltage ? figure.at.voltage : rated; };
-    model.leakage_voltage = volts(*main);
+    const auto kelvin = [](const Figure& figure) { return temperature_of(figure, kRoom); };
+    const auto read = [](const Figure& figure) { return figure.known == Known::measured; };
+    // Slopes come from two figures of one origin: a print's limit against a part's own reading tells nothing of either.
+    double widest = 15;
     bool growth_known = false;
-    for (const Figure* figure : figures) {
-        if (figure == main || !(amperes(*figure) > 0) || !(*model.leakage > 0)) continue;
-        const double span = model.leakage_temperature - temperature_of(*figure, kRoom);
-        if (span > 15 && volts(*figure) == volts(*main) && !growth_known) {
-            model.leakage_growth = std::log(*model.leakage / amperes(*figure)) / span;
-            growth_known = true;
-        } else if (std::abs(span) < 1 && volts(*figure) && volts(*main) && *volts(*figure) != *volts(*main)) {
-            model.leakage_exponent = std::log(*model.leakage / amperes(*figure)) / std::log(*volts(*main) / *volts(*figure));
+    for (const Figure* hot : figures)
+        for (const Figure* cold : figures) {
+            if (read(*hot) != read(*cold) || !(amperes(*cold) > 0) || !(amperes(*hot) > amperes(*cold))) continue;
+            const double span = kelvin(*hot) - kelvin(*cold);
+            if (span > widest && volts(*hot) == volts(*cold)) {
+                widest = span;
+                model.leakage_growth = std::log(amperes(*hot) / amperes(*cold)) / span;
+                growth_known = true;
+            } else if (std::abs(span) < 1 && volts(*hot) && volts(*cold) && *volts(*hot) > *volts(*cold) && *volts(*cold) > 0) {
+                model.leakage_exponent = std::log(amperes(*hot) / amperes(*cold)) / std::log(*volts(*hot) / *volts(*cold));
+            }
         }
+    double hottest = 0;
+    for (const Figure* figure : figures) hottest = std::max(hottest, kelvin(*figure));
+    const auto foretells = [&](const Figure& figure) {
+        const double bias = rated && volts(figure) && *volts(figure) > 0 ? std::pow(*rated / *volts(figure), model.leakage_exponent) : 1.0;
+        return amperes(figure) * std::exp(model.leakage_growth * (hottest - kelvin(figure))) * bias;
+    };
+    const Figure* main = nullptr;
+    for (const Figure* figure : figures) {
+        const bool better = main == nullptr                       ? true
+                            : end == End::worst                   ? foretells(*figure) > foretells(*main)
+                            : read(*figure) != read(*main)        ? read(*figure)
+                                                                  : kelvin(*figure) > kelvin(*main);
+        if (better) main = figure;
     }
+    model.leakage = amperes(*main);
+    model.leakage_temperature = kelvin(*main);
+    model.leakage_voltage = volts(*main);
     if (!growth_known) model.rests_on.push_back("leakage taken to grow with c = 0.055/K (one temperature on record)");
+    if (figures.size() > 1 && kelvin(*main) < hottest - 15)
+        model.rests_on.push_back(fmt::format("leakage carried up from the figure at {}", format_quantity(kelvin(*main), Unit::celsius)));
 }
 
 }  // namespace
@@ -115,7 +134,8 @@ RectifierModel rectifier_model(const Part& part, int count, End end) {
     } else {
         model.missing.push_back("C_j");
     }
-    if (model.pn || technology.empty()) {
+    model.recovers = model.pn || technology.empty();
+    if (model.recovers) {
         if (const auto charge = end_value(part, Symbol::Q_rr, end))
             model.recovery_charge = *charge * legs;
         else if (const auto time = end_value(part, Symbol::t_rr, end)) {

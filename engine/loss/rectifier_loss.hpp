@@ -25,13 +25,16 @@ struct RectifierModel {
     double leakage_exponent = 0;       ///< of voltage, from two figures at one temperature
     std::optional<double> capacitance, capacitance_at;  ///< C_j of all legs [F] at [V]
     std::optional<double> recovery_charge;  ///< Q_rr of all legs [C]
-    bool pn = false;                   ///< not a Schottky: recovery counts
+    bool pn = false;                   ///< known not to be a Schottky
+    bool recovers = false;             ///< not known to be a Schottky: recovery counts
     std::vector<std::string> rests_on, missing;
 };
 
 /// V_T0 and r_d: the line through figures at one temperature; several temperatures give their slopes. One figure: V_T0 = 70 % of
 /// V_F and −1.2 mV/K (Schottky) or 80 % and −2 mV/K (PN), common practice. Leakage: exponential in temperature with the c of
-/// two figures, else c = 0.055/K (STMicroelectronics AN869); constant in voltage unless two figures tell.
+/// two figures, else c = 0.055/K (STMicroelectronics AN869); constant in voltage unless two figures tell. Of several figures
+/// the worst end takes the one that foretells most at the hottest of their temperatures, whoever measured or printed it;
+/// the other ends believe measurements first.
 [[nodiscard]] RectifierModel rectifier_model(const Part& part, int count, End end);
 
 [[nodiscard]] double forward_threshold(const RectifierModel& model, double junction);   ///< V_T0(T) [V], ≥ 0.05

@@ -224,3 +224,31 @@ TEST_CASE("class 2 ceramics lose capacitance under bias and others do not", "[en
     const Lot can = lot_of("capacitor/film", {{"C", "10 µF"}, {"U_R", "25 V"}});
     CHECK(bias_factor(capacitor_model(can.part, 100e3, End::worst), 25, End::worst) == 1);
 }
+
+TEST_CASE("a leaky part's own reading counts against the print of its type", "[engine][loss]") {
+    // Read at 25 °C, ten times what the type's limit at 100 °C carried down by c = 0.055/K would be there.
+    Lot lot = lot_of("rectifier/schottky", {{"V_F", "0.5 V @ 2 A"}, {"I_R", "15 mA max @ 45 V, 100 °C"}});
+    const double expected = 15e-3 * std::exp(-0.055 * 75);
+    Figure reading = parse_figure(Symbol::I_R, "2 mA @ 45 V, 25 °C", Known::measured);
+    reading.value = {10 * expected, 10 * expected, 10 * expected};
+    lot.part.figures.insert(lot.part.figures.begin(), reading);
+    CHECK(leakage(rectifier_model(lot.part, 1, End::worst), 45, celsius(100)) == Approx(150e-3).epsilon(1e-9));
+    // A good reading does not lower the worst end below what the type allows; the typical end believes it.
+    lot.part.figures.front().value = {expected / 10, expected / 10, expected / 10};
+    CHECK(leakage(rectifier_model(lot.part, 1, End::worst), 45, celsius(100)) == Approx(15e-3).epsilon(1e-9));
+    CHECK(leakage(rectifier_model(lot.part, 1, End::typical), 45, celsius(100)) == Approx(1.5e-3).epsilon(1e-9));
+}
+
+TEST_CASE("of more than two forward figures none lies above the line", "[engine][loss]") {
+    const Lot lot = lot_of("rectifier/schottky", {{"V_F", "0.40 V @ 1 A, 125 °C"}, {"V_F", "0.52 V @ 5 A, 125 °C"}, {"V_F", "0.60 V @ 10 A, 125 °C"}});
+    const RectifierModel model = rectifier_model(lot.part, 1, End::worst);
+    for (const auto& [i, v] : {std::pair(1.0, 0.40), {5.0, 0.52}, {10.0, 0.60}})
+        CHECK(forward_threshold(model, celsius(125)) + i * forward_resistance(model, celsius(125)) >= v * (1 - 1e-12));
+}
+
+TEST_CASE("a rectifier of unknown kind without recovery figures says what is missing", "[engine][loss]") {
+    const Lot lot = lot_of("rectifier", {{"V_F", "0.9 V @ 5 A"}, {"I_R", "10 µA @ 200 V"}});
+    const RectifierModel model = rectifier_model(lot.part, 1, End::worst);
+    CHECK(model.recovers);
+    CHECK(mentions(model.missing, "Q_rr"));
+}
