@@ -12,11 +12,13 @@ namespace binwright {
 namespace {
 
 /// Junction to case of everything in a seat together [K/W].
-std::optional<double> junction_to_case(const Part& part, int count, int legs, End end) {
+/// The busier of several counts: it stands above the case as if all carried as much as it does.
+std::optional<double> junction_to_case(const Part& part, int count, int legs, End end, double sharing) {
+    const double busier = end == End::worst && legs > 1 ? 1 + sharing : 1;
     for (const Figure& figure : part.figures)
-        if (figure.symbol == Symbol::R_thjc) return at_end(figure.value, end) / (figure.both_legs ? count : legs);
+        if (figure.symbol == Symbol::R_thjc) return busier * at_end(figure.value, end) / (figure.both_legs ? count : legs);
     const auto power = end_value(part, Symbol::P_tot, end), highest = end_value(part, Symbol::T_jmax, end);
-    if (power && highest && *power > 0) return (*highest - kCelsiusZero - 25) / *power / count;  // definition of P_tot
+    if (power && highest && *power > 0) return busier * (*highest - kCelsiusZero - 25) / *power / count;  // definition of P_tot
     return std::nullopt;
 }
 
@@ -30,10 +32,10 @@ void add_heat(Bench& bench, Seat seat, const Part& part, int count, int legs) {
             bench.no_heat.emplace_back(seat, "R_th(j-a)");
             return;
         }
-        heat.own = *free / count;
+        heat.own = *free / count * (bench.end == End::worst && legs > 1 ? 1 + bench.allowances.sharing : 1);
         bench.assumptions.push_back(fmt::format("{} stands without a heatsink", name));
     } else {
-        const auto inside = junction_to_case(part, count, legs, bench.end);
+        const auto inside = junction_to_case(part, count, legs, bench.end, bench.allowances.sharing);
         if (!inside) {
             bench.no_heat.emplace_back(seat, "R_th(j-c)");
             return;
@@ -51,6 +53,10 @@ void add_heat(Bench& bench, Seat seat, const Part& part, int count, int legs) {
     bench.heated.push_back(seat);
     bench.layout.seats.push_back(heat);
 }
+
+/// Highest drop at the peak current, as a share of the input voltage, by which losses are returned to the branches of switch,
+/// rectifier and windings. The rectifier's is part of what the switch blocks.
+constexpr double kMostDrop[] = {0.1, 0.02, 0.1, 0.1};
 
 double rms_power(double power, double current) { return current > 0 ? std::max(0.0, power) / (current * current) : 0.0; }
 
@@ -89,6 +95,12 @@ Bench bench_of(const Setup& setup, End end, const Allowances& allowances) {
         not_included(model.missing, "C_oss", "switch output charge");
         if (model.switching_charge && (!setup.converter.drive.voltage || !setup.converter.drive.resistance))
             bench.not_included.push_back("switch overlap: [drive] gives no voltage or resistance");
+        if (const auto& drive = setup.converter.drive.voltage; drive && model.switching_charge && model.plateau) {
+            bench.drives_plateau = (end == End::best ? drive->highest : drive->lowest) > *model.plateau;
+            if (!bench.drives_plateau)
+                bench.not_included.push_back(fmt::format("switch overlap: the drive does not exceed the gate plateau of {}",
+                                                         format_quantity(*model.plateau, Unit::volt)));
+        }
         add_heat(bench, Seat::switch_, setup.fitted.at(Seat::switch_).front().lot.part, bench.models.switch_count, bench.models.switch_count);
     } else {
         bench.not_included.push_back("switch overlap and output charge: no part is fitted");
@@ -204,10 +216,20 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         const double extra_switch = switch_loss_now.overlap + switch_loss_now.output + charge;
         const double extra_rectifier = heat.stable || bench.heated.empty() ? rectifier_loss_now.reverse : 0;
         const double core_first = first.core_loss.value_or(0), core_second = second != nullptr ? second->core_loss.value_or(0) : 0;
-        const double next[] = {rms_power(extra_switch, state.switch_.current_rms), rms_power(extra_rectifier, state.rectifier.current_rms),
-                               rms_power(core_first, state.primary.current_rms), rms_power(core_second, state.secondary.current_rms)};
-        double* now[] = {&returned_switch, &returned_rectifier, &returned_first, &returned_second};
+        const double extras[] = {extra_switch, extra_rectifier, core_first, core_second};
         const double currents[] = {state.switch_.current_rms, state.rectifier.current_rms, state.primary.current_rms, state.secondary.current_rms};
+        const double peaks[] = {state.switch_.current_peak, state.rectifier.current_peak, state.primary.current_peak, state.secondary.current_peak};
+        double* now[] = {&returned_switch, &returned_rectifier, &returned_first, &returned_second};
+        double next[4], direct[4];
+        for (int k = 0; k < 4; ++k) {
+            // Where a branch carries next to nothing, a resistance that takes up the loss would bend the waveforms: what is
+            // beyond a small drop is drawn from the input directly.
+            next[k] = rms_power(extras[k], currents[k]);
+            const double most = peaks[k] > 0 ? kMostDrop[k] * at.input_voltage / peaks[k] : 0.0;
+            const bool capped = !(next[k] <= most && currents[k] > 0);
+            next[k] = std::min(next[k], most);
+            direct[k] = capped ? std::max(0.0, extras[k] - currents[k] * currents[k] * *now[k]) : 0.0;
+        }
         for (int k = 0; k < 4; ++k) {
             const double difference = std::abs(next[k] - *now[k]) * currents[k] * currents[k];
             moved = std::max(moved, difference / std::max(1e-6, state.input_power));
@@ -224,7 +246,7 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         };
         const double switch_square = state.switch_.current_rms * state.switch_.current_rms;
         const double rectifier_square = state.rectifier.current_rms * state.rectifier.current_rms;
-        const double network_extra = switch_square * (circuit.switch_resistance - on_resistance_now);
+        const double network_extra = switch_square * (circuit.switch_resistance - on_resistance_now) + direct[0];
         add("switch conduction", Seat::switch_, switch_square * on_resistance_now);
         if (extra_switch > 0) {
             add("switch overlap", Seat::switch_, network_extra * switch_loss_now.overlap / extra_switch);
@@ -234,13 +256,13 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         }
         add("sense resistor", {}, switch_square * circuit.sense_resistance);
         add("rectifier forward", Seat::rectifier, drop_now * state.rectifier.current_average + rectifier_square * rectifier_resistance_now);
-        add("rectifier leakage", Seat::rectifier, rectifier_square * (circuit.rectifier_resistance - rectifier_resistance_now));
-        const auto winding = [&](const std::string& name, const WindingStress& stress, double copper, double total) {
+        add("rectifier leakage", Seat::rectifier, rectifier_square * (circuit.rectifier_resistance - rectifier_resistance_now) + direct[1]);
+        const auto winding = [&](const std::string& name, const WindingStress& stress, double copper, double total, double beside) {
             add(name + " winding copper", {}, stress.current_rms * stress.current_rms * copper);
-            add(name + " winding core", {}, stress.current_rms * stress.current_rms * (total - copper));
+            add(name + " winding core", {}, stress.current_rms * stress.current_rms * (total - copper) + beside);
         };
-        winding("primary", state.primary, copper_first, circuit.primary.resistance);
-        if (has_secondary(*circuit.topology)) winding("secondary", state.secondary, copper_second, circuit.secondary.resistance);
+        winding("primary", state.primary, copper_first, circuit.primary.resistance, direct[2]);
+        if (has_secondary(*circuit.topology)) winding("secondary", state.secondary, copper_second, circuit.secondary.resistance, direct[3]);
         const auto bank = [&](Seat seat, const std::vector<CapacitorValues>& values, const CapacitorStress& stress) {
             double power = 0;
             for (std::size_t k = 0; k < values.size() && k < stress.branch_current_rms.size(); ++k)
@@ -253,11 +275,13 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         if (circuit.topology->transformer && circuit.coupling < 1)
             add("leakage inductance", {}, 0.5 * circuit.primary.inductance * (1 - circuit.coupling * circuit.coupling) * state.switch_.current_turn_off *
                                               state.switch_.current_turn_off * at.frequency);
-        if (moved < 1e-6 || (!result.stable && round > 3)) {
+        if (moved < 1e-6 || (!result.stable && round > 3) || round == 79) {
             result.state = state;
+            const double beside = direct[0] + direct[1] + direct[2] + direct[3];
+            result.state.input_power += beside;
+            if (at.input_voltage > 0) result.state.input_current_average += beside / at.input_voltage;
             break;
         }
-        if (round == 79) result.state = state;
     }
     result.gate_power = switch_loss_now.gate;
     result.circuit = circuit;

@@ -19,6 +19,7 @@ struct Bench {
     Models models;
     double primary_factor = 1, secondary_factor = 1;  ///< of inductance, for tolerances
     std::optional<double> coupling;                   ///< instead of the middle of its range
+    bool drives_plateau = true;           ///< false: the drive does not lift the gate above its plateau, overlap cannot be computed
     HeatLayout layout;                    ///< seats: those of `heated`, ambient of the point
     std::vector<Seat> heated;             ///< switch, rectifier: whose junction temperature can be computed
     std::vector<std::string> assumptions, not_included;
@@ -39,7 +40,9 @@ struct Operated {
 };
 
 /// Network and heat solved together: losses that the network does not contain (overlap, output and junction charge,
-/// leakage, core) are series resistances P/I_rms² in it, until nothing changes. A loss that has run away is not returned.
+/// leakage, core) are series resistances P/I_rms² in it, until nothing changes; what a branch of
+/// little current could take up only with a drop that bends the waveforms is drawn from the input beside the network. A loss
+/// that has run away is not returned.
 [[nodiscard]] Operated operate(const Bench& bench, const At& at, Solver& solver);
 
 }  // namespace binwright

@@ -58,11 +58,50 @@ double ripple_of_one(const Bench& bench, const StressKey& key, const Operated& o
     return state.branch_current_rms[branch] / found->second[key.entry].count;
 }
 
-Terms switch_voltage_terms(const Bench& bench, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+double surge_of(const Bench& bench) {
+    const auto& source = bench.setup->converter.source;
+    return source && source->surge ? *source->surge : 0.0;
+}
+
+/// Whether the input reaches the output through windings and rectifier alone: then a surge passes, whatever the switch does.
+bool input_reaches_output(const Topology& topology) {
+    int source = -1, load = -1;
+    for (const Branch& branch : topology.branches) {
+        if (branch.kind == BranchKind::source) source = branch.from;
+        if (branch.kind == BranchKind::load) load = branch.from;
+    }
+    std::vector<bool> reached(topology.nodes.size(), false);
+    reached[source] = true;
+    reached[0] = false;
+    for (std::size_t round = 0; round < topology.nodes.size(); ++round)
+        for (const Branch& branch : topology.branches) {
+            const bool winding = branch.kind == BranchKind::primary || (branch.kind == BranchKind::secondary && !topology.transformer);
+            if (!winding && branch.kind != BranchKind::rectifier) continue;
+            if (branch.from == 0 || branch.to == 0) continue;
+            if (reached[branch.from]) reached[branch.to] = true;
+            if (winding && reached[branch.to]) reached[branch.from] = true;
+        }
+    return load > 0 && reached[load];
+}
+
+/// What a surge adds to a voltage made of these terms: to its share of the input, or to an output that follows the input.
+void add_surge(Terms& terms, const Bench& bench, const At& at, const Operated& operated) {
+    const double surge = surge_of(bench);
+    if (!(surge > at.input_voltage) || terms.empty()) return;
+    const bool follows = input_reaches_output(*operated.circuit.topology);
+    if (terms.front().name == "input" && at.input_voltage > 0)
+        terms.push_back({"surge above the input", (surge - at.input_voltage) * terms.front().value / at.input_voltage});
+    else if (terms.front().name == "output" && follows)
+        terms.push_back({"surge above the output", std::max(0.0, surge - operated.state.output_voltage_average)});
+}
+
+Terms switch_voltage_terms(const Bench& bench, const At& at, const Operated& operated, bool with_surge, std::vector<std::string>& rests_on) {
     const SteadyState& state = operated.state;
     const bool transformer = operated.circuit.topology->transformer;
     Terms terms = blocking_terms(state.switch_.voltage_peak, at.input_voltage, state.output_voltage_average, 1,
                                  transformer ? 1 / operated.circuit.turns_ratio : 1);
+    if (with_surge) add_surge(terms, bench, at, operated);
+    const double blocked = sum(terms);
     const SeatConfig& config = bench.setup->converter.seat(Seat::switch_);
     if (config.overshoot) {
         double volts = config.overshoot->voltage;
@@ -72,29 +111,31 @@ Terms switch_voltage_terms(const Bench& bench, const At& at, const Operated& ope
             rests_on.push_back("overshoot measured at an unstated current, taken as it is");
         terms.push_back({"overshoot, measured", volts});
     } else if (bench.setup->converter.clamp.voltage) {
-        terms.push_back({"up to the clamp", std::max(0.0, *bench.setup->converter.clamp.voltage - state.switch_.voltage_peak)});
+        terms.push_back({"up to the clamp", std::max(0.0, *bench.setup->converter.clamp.voltage - blocked)});
     } else {
         const double share = bench.allowances.switch_overshoot;
-        terms.push_back({"overshoot, assumed", share * state.switch_.voltage_peak});
+        terms.push_back({"overshoot, assumed", share * blocked});
         rests_on.push_back(fmt::format("overshoot {} of {}, not measured", format_quantity(share, Unit::fraction),
-                                       format_quantity(state.switch_.voltage_peak, Unit::volt)));
+                                       format_quantity(blocked, Unit::volt)));
     }
     return terms;
 }
 
-Terms rectifier_voltage_terms(const Bench& bench, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+Terms rectifier_voltage_terms(const Bench& bench, const At& at, const Operated& operated, bool with_surge, std::vector<std::string>& rests_on) {
     const SteadyState& state = operated.state;
     const bool transformer = operated.circuit.topology->transformer;
     Terms terms = blocking_terms(state.rectifier.reverse_voltage_peak, at.input_voltage, state.output_voltage_average,
                                  transformer ? operated.circuit.turns_ratio : 1, 1);
+    if (with_surge) add_surge(terms, bench, at, operated);
+    const double blocked = sum(terms);
     const SeatConfig& config = bench.setup->converter.seat(Seat::rectifier);
     if (config.overshoot) {
         terms.push_back({"overshoot, measured", config.overshoot->voltage});
     } else {
         const double share = bench.allowances.rectifier_overshoot;
-        terms.push_back({"overshoot, assumed", share * state.rectifier.reverse_voltage_peak});
+        terms.push_back({"overshoot, assumed", share * blocked});
         rests_on.push_back(fmt::format("overshoot {} of {}, not measured", format_quantity(share, Unit::fraction),
-                                       format_quantity(state.rectifier.reverse_voltage_peak, Unit::volt)));
+                                       format_quantity(blocked, Unit::volt)));
     }
     return terms;
 }
@@ -124,14 +165,14 @@ Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Ope
     const double sharing = key.seat == Seat::switch_ && bench.models.switch_count > 1 ? (1 + bench.allowances.sharing) / bench.models.switch_count : 1;
     switch (key.stress) {
         case Stress::voltage_peak_repetitive:
-            if (key.seat == Seat::switch_) return switch_voltage_terms(bench, at, operated, rests_on);
-            if (key.seat == Seat::rectifier) return rectifier_voltage_terms(bench, at, operated, rests_on);
+            if (key.seat == Seat::switch_) return switch_voltage_terms(bench, at, operated, false, rests_on);
+            if (key.seat == Seat::rectifier) return rectifier_voltage_terms(bench, at, operated, false, rests_on);
             return capacitor_voltage_terms(key.seat, at, operated);
         case Stress::voltage_peak_single: {
-            Terms terms = capacitor_voltage_terms(key.seat, at, operated);
-            const bool with_input = !terms.empty() && terms.front().name == "input";
-            if (converter.source && converter.source->surge && with_input)
-                terms.push_back({"surge above the input", std::max(0.0, *converter.source->surge - at.input_voltage)});
+            Terms terms = key.seat == Seat::switch_     ? switch_voltage_terms(bench, at, operated, true, rests_on)
+                          : key.seat == Seat::rectifier ? rectifier_voltage_terms(bench, at, operated, true, rests_on)
+                                                        : capacitor_voltage_terms(key.seat, at, operated);
+            if (key.seat != Seat::switch_ && key.seat != Seat::rectifier) add_surge(terms, bench, at, operated);
             if (!converter.source || converter.source->switched) rests_on.push_back("hot connection not computed");
             return terms;
         }
@@ -204,8 +245,11 @@ Sight sight_of(const Bench& bench) {
             };
             if (seat == Seat::switch_) {
                 const bool held = converter.seat(seat).overshoot || converter.clamp.voltage;
-                if (converter.topology->transformer && !held) lacks(seat, entry, Stress::voltage_peak_repetitive, "a measured overshoot, or [clamp]");
-                else see(seat, entry, Stress::voltage_peak_repetitive);
+                for (const Stress stress : {Stress::voltage_peak_repetitive, Stress::voltage_peak_single}) {
+                    if (stress == Stress::voltage_peak_single && !(surge_of(bench) > 0)) continue;
+                    if (converter.topology->transformer && !held) lacks(seat, entry, stress, "a measured overshoot, or [clamp]");
+                    else see(seat, entry, stress);
+                }
                 if (converter.drive.voltage) {
                     see(seat, entry, Stress::gate_voltage);
                     see(seat, entry, Stress::drive_voltage_lowest);
@@ -224,17 +268,29 @@ Sight sight_of(const Bench& bench) {
                     const std::string what = !model.switching_charge ? "Q_g" : "drive.voltage and drive.resistance";
                     lacks(seat, entry, Stress::power, what);
                     lacks(seat, entry, Stress::junction_temperature, what);
+                } else if (!bench.drives_plateau) {
+                    for (const Stress stress : {Stress::power, Stress::junction_temperature})
+                        lacks(seat, entry, stress, "a drive voltage above the gate plateau");
                 } else {
                     see(seat, entry, Stress::power);
                     heat(Stress::junction_temperature);
+                    // What is on record gives a lower bound: enough to reject, not to hold.
+                    if (!model.output_capacitance)
+                        for (const Stress stress : {Stress::power, Stress::junction_temperature}) lacks(seat, entry, stress, "C_oss");
+                    if (bench.models.rectifier)
+                        for (const std::string& figure : bench.models.rectifier->missing)
+                            if (figure == "C_j" || figure == "Q_rr")
+                                for (const Stress stress : {Stress::power, Stress::junction_temperature})
+                                    lacks(seat, entry, stress, figure + " of the rectifier");
                 }
             } else if (seat == Seat::rectifier) {
                 see(seat, entry, Stress::voltage_peak_repetitive);
+                if (surge_of(bench) > 0) see(seat, entry, Stress::voltage_peak_single);
                 if (!part) continue;
                 see(seat, entry, Stress::current_average);
                 see(seat, entry, Stress::current_peak);
                 const RectifierModel& model = *bench.models.rectifier;
-                const std::string figure = !model.threshold ? "V_F" : !model.leakage ? "I_R" : model.pn && !model.recovery_charge ? "Q_rr" : "";
+                const std::string figure = !model.threshold ? "V_F" : !model.leakage ? "I_R" : model.recovers && !model.recovery_charge ? "Q_rr" : "";
                 if (!figure.empty()) {
                     for (const Stress stress : {Stress::power, Stress::junction_temperature, Stress::runaway_gain}) lacks(seat, entry, stress, figure);
                 } else {

@@ -126,3 +126,19 @@ TEST_CASE("no random point of the range beats the reported worst", "[engine][exp
         }
     }
 }
+
+TEST_CASE("losses returned to a branch of little current do not bend what others see", "[engine][exposure]") {
+    // A buck at a twenty-fifth of its load with a core loss of half its output power: as one series resistance it would take the
+    // output away, and leakage in a rectifier that hardly conducts would raise what the switch blocks to several times the input.
+    const Setup setup = setup_of(supply_text("buck"));
+    const Bench bench = bench_of(setup, End::worst, {});
+    Solver solver;
+    for (const double vin : {10.5, 12.873, 15.0})
+        for (const double current : {0.1, 0.15, 0.3}) {
+            const Operated operated = operate(bench, {vin, 8.24, current, 100e3, kCelsiusZero + 45}, solver);
+            INFO(vin << " V, " << current << " A");
+            CHECK(operated.state.reached);
+            CHECK(operated.state.switch_.voltage_peak < vin * 1.03 + 0.7);
+            CHECK(operated.state.input_power == Approx(operated.state.output_power + total(operated.losses)).epsilon(1e-6));
+        }
+}

@@ -1,0 +1,65 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// What a surge at the input does to every position, and what cannot be told for want of a figure.
+#include <catch2/catch.hpp>
+#include <cmath>
+
+#include "tests/engine/exposure_support.hpp"
+
+using namespace binwright;
+using namespace binwright::test;
+
+namespace {
+
+const StressValue* single(const Exposure& exposure, Seat seat) { return exposure.seats.at(seat).front().find(Stress::voltage_peak_single); }
+
+bool lacks(const Exposure& exposure, Seat seat, Stress stress, const std::string& figure) {
+    for (const auto& [one, what] : exposure.seats.at(seat).front().missing)
+        if (one == stress && what == figure) return true;
+    return false;
+}
+
+Setup without(Setup setup, Seat seat, Symbol symbol) {
+    std::vector<Fitted> fitted = setup.fitted.at(seat);
+    std::erase_if(fitted.front().lot.part.figures, [&](const Figure& figure) { return figure.symbol == symbol; });
+    return with_fitted(setup, seat, fitted);
+}
+
+}  // namespace
+
+TEST_CASE("a surge reaches switch and rectifier wherever the input does", "[engine][exposure]") {
+    // By hand: a buck blocks its input in both; with 40 V at the input and overshoots of 20 % and 30 % (house rules) they see
+    // 48 V and 52 V, give or take drops and ripple.
+    const std::vector<std::string> surge = {"source.surge=40 V"};
+    std::string text = supply_text("buck");
+    text.erase(text.find("overshoot = "), std::string("overshoot = \"4 V @ 9.5 A\"").size());
+    const Exposure buck = expose(setup_of(text, surge), End::worst, {});
+    REQUIRE(single(buck, Seat::switch_) != nullptr);
+    CHECK(single(buck, Seat::switch_)->value == Approx(48).epsilon(0.03));
+    REQUIRE(single(buck, Seat::rectifier) != nullptr);
+    CHECK(single(buck, Seat::rectifier)->value == Approx(52).epsilon(0.03));
+    CHECK(single(buck, Seat::input_capacitor)->value == Approx(40).epsilon(0.02));
+    CHECK(single(buck, Seat::output_capacitor)->value < 9);
+    // A sepic blocks input plus output.
+    const Exposure sepic = expose(setup_of(supply_text(), surge), End::worst, {});
+    CHECK(single(sepic, Seat::rectifier)->value == Approx(1.3 * (40 + 15.45)).epsilon(0.04));
+    CHECK(single(sepic, Seat::coupling_capacitor)->value == Approx(40).epsilon(0.05));
+    // Through a boost's choke and rectifier a surge above the output arrives there.
+    const Exposure boost = expose(setup_of(supply_text("boost"), surge), End::worst, {});
+    CHECK(single(boost, Seat::output_capacitor)->value >= 39.9);
+    CHECK(single(boost, Seat::switch_)->value >= 40);
+    // Without a surge there is no such event in switch and rectifier.
+    CHECK(single(expose(setup_of(supply_text("boost")), End::worst, {}), Seat::switch_) == nullptr);
+}
+
+TEST_CASE("a loss whose figure is missing leaves the junction temperature unproven", "[engine][exposure]") {
+    const Setup setup = setup_of(supply_text());
+    CHECK(lacks(expose(without(setup, Seat::switch_, Symbol::C_oss), End::worst, {}), Seat::switch_, Stress::junction_temperature, "C_oss"));
+    CHECK(lacks(expose(without(setup, Seat::rectifier, Symbol::C_j), End::worst, {}), Seat::switch_, Stress::junction_temperature, "C_j of the rectifier"));
+    CHECK(lacks(expose(without(setup, Seat::rectifier, Symbol::I_R), End::worst, {}), Seat::rectifier, Stress::runaway_gain, "I_R"));
+    CHECK(lacks(expose(without(setup, Seat::switch_, Symbol::R_thjc), End::worst, {}), Seat::switch_, Stress::junction_temperature, "R_th(j-c)"));
+    const Exposure weak = expose(setup_of(supply_text(), {"drive.voltage=4.6 V"}), End::worst, {});  // plateau: 1.6 times 3 V
+    CHECK(lacks(weak, Seat::switch_, Stress::junction_temperature, "a drive voltage above the gate plateau"));
+    bool told = false;
+    for (const std::string& one : weak.not_included) told = told || one.find("plateau of 4.8 V") != std::string::npos;
+    CHECK(told);
+}
