@@ -22,6 +22,8 @@ struct CapacitorModel {
     std::optional<double> life;         ///< at T_max and rated ripple [s]
     std::optional<double> rated_voltage;
     std::vector<std::string> rests_on, missing;
+    double life_rise = 0;               ///< ΔT_L: rise that the rated life already includes [K]; 0 earns no credit for it
+    std::optional<double> surface, core_over_case;  ///< of the can [m²]; rise of its core over that of its surface
     bool aged = false;                  ///< computed with end-of-life figures
 };
 
@@ -30,7 +32,7 @@ struct Ageing {
     double capacitance = 1, resistance = 1;  ///< factors
 };
 
-/// ESR from ESR or tan δ/(2πfC); ripple rating to the working frequency by the aluminium frequency factors of the trade
+/// ESR from ESR or tan δ/(2πfC); ripple rating (of several the one nearest in frequency) to the working frequency by the aluminium frequency factors of the trade
 /// (120 Hz → 100 kHz: ×1.2 … 1.4 … 1.7); a figure without frequency counts as 120 Hz.
 [[nodiscard]] CapacitorModel capacitor_model(const Part& part, double frequency, End end, const Ageing& ageing = {});
 
@@ -38,7 +40,21 @@ struct Ageing {
 /// the rated voltage; best end: nine tenths and six tenths). 1 for every other kind.
 [[nodiscard]] double bias_factor(const CapacitorModel& model, double voltage, End end);
 
-/// Self-heating at a ripple current of one part [K]: ΔT0·(I/I_R)². Empty without a ripple rating.
+/// Self-heating of a body in still air.
+struct SurfaceHeating {
+    double current;     ///< [A]
+    double resistance;  ///< [Ω]
+    double surface;     ///< [m²], > 0
+    double transfer;    ///< β [W/(m²·K)], > 0
+};
+/// Rise of the surface I²·ESR/(β·S) [K] (capacitor makers' life guides). @throws OutsideModel outside the ranges above
+[[nodiscard]] double surface_rise(const SurfaceHeating& heating);
+/// β of a can by its surface [m²]: 2.3·10⁻³·S^−0.2 W/(cm²·K), S in cm² (a capacitor maker's life guide).
+[[nodiscard]] double surface_transfer(double surface);
+
+/// Self-heating at a ripple current of one part [K]: ΔT0·(I/I_R)²; without a ripple rating from ESR and the size of the can,
+/// times the makers' ratio of core to case by its diameter. A rating stated below T_max counts as heating up to T_max and
+/// ΔT0 above it. Empty where neither can be told.
 [[nodiscard]] std::optional<double> ripple_rise(const CapacitorModel& model, double current);
 
 /// Life [s] at a hot-spot temperature: aluminium and hybrid L0·2^((T_max − T_hot)/10), polymer L0·10^((T_max − T_hot)/20), T_hot

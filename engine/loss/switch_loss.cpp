@@ -10,17 +10,44 @@
 
 namespace binwright {
 
-SwitchModel switch_model(const Part& part, End end) {
+namespace {
+
+double gate_of(const Figure& figure) { return figure.at.voltage.value_or(*info(Symbol::R_DSon).usual.voltage); }
+
+/// Those of the on-state resistances that stand for this drive.
+std::vector<const Figure*> driven(std::vector<const Figure*> figures, std::optional<double> drive, std::vector<std::string>& rests_on) {
+    if (figures.empty()) return figures;
+    double reached = 0, lowest = gate_of(*figures.front());
+    for (const Figure* figure : figures) {
+        const double gate = gate_of(*figure);
+        lowest = std::min(lowest, gate);
+        if (!drive || gate <= *drive * (1 + 1e-9)) reached = std::max(reached, gate);
+    }
+    if (reached == 0) {
+        reached = lowest;
+        rests_on.push_back(fmt::format("R_DS(on) stated at a gate voltage of {}, and the drive may give {}", format_quantity(lowest, Unit::volt),
+                                       format_quantity(drive.value_or(0), Unit::volt)));
+    }
+    std::erase_if(figures, [&](const Figure* figure) { return gate_of(*figure) != reached; });
+    return figures;
+}
+
+}  // namespace
+
+SwitchModel switch_model(const Part& part, End end, std::optional<double> drive) {
     SwitchModel model;
-    const std::vector<const Figure*> resistances = figures_of(part, Symbol::R_DSon);
+    const std::vector<const Figure*> resistances = driven(figures_of(part, Symbol::R_DSon), drive, model.rests_on);
     if (resistances.empty()) {
         model.missing.push_back("R_DS(on)");
     } else {
         const Figure* cold = resistances.front();
         const Figure* hot = nullptr;
-        for (const Figure* figure : resistances) {  // the figure at the highest gate voltage, nearest 25 °C
-            const double t = temperature_of(*figure, kCelsiusZero + 25);
-            if (std::abs(t - kCelsiusZero - 25) < std::abs(temperature_of(*cold, kCelsiusZero + 25) - kCelsiusZero - 25)) cold = figure;
+        const auto from_room = [](const Figure& figure) { return std::abs(temperature_of(figure, kCelsiusZero + 25) - kCelsiusZero - 25); };
+        for (const Figure* figure : resistances) {  // the figure nearest 25 °C, of several the one that this end means
+            const double nearer = from_room(*cold) - from_room(*figure);
+            const double value = at_end(figure->value, end), other = at_end(cold->value, end);
+            const bool meant = end == End::worst ? value > other : end == End::best && value < other;
+            if (nearer > 1 || (std::abs(nearer) <= 1 && meant)) cold = figure;
         }
         for (const Figure* figure : resistances)
             if (temperature_of(*figure, kCelsiusZero + 25) > temperature_of(*cold, kCelsiusZero + 25) + 20) hot = figure;

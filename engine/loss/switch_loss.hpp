@@ -26,8 +26,9 @@ struct SwitchModel {
 
 /// R_DS(on)(T) = R25·(1 + a)^(T − 25 °C), the compound law of published application notes on switch losses. With one figure
 /// a is that of its kind: ×1.4 … 1.6 … 1.8 at 100 °C and above (common practice for low-voltage trench parts); two figures at different
-/// temperatures give it.
-[[nodiscard]] SwitchModel switch_model(const Part& part, End end);
+/// temperatures give it. Of figures at several gate voltages the highest that `drive` [V] reaches counts; where it reaches none, the
+/// lowest, and that is said.
+[[nodiscard]] SwitchModel switch_model(const Part& part, End end, std::optional<double> drive = {});
 
 struct GateDrive {
     double voltage;     ///< [V]
