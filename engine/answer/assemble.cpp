@@ -88,7 +88,8 @@ Setup assemble(Converter converter, const std::function<std::optional<Lot>(const
 
 Setup with_fitted(const Setup& setup, Seat seat, std::vector<Fitted> fitted) {
     Setup other = setup;
-    other.fitted[seat] = std::move(fitted);
+    if (fitted.empty()) other.fitted.erase(seat);
+    else other.fitted[seat] = std::move(fitted);
     return other;
 }
 
@@ -108,7 +109,9 @@ Models models_of(const Setup& setup, End end, const Allowances& allowances, doub
     for (const auto& [seat, fitted] : setup.fitted)
         for (const Fitted& entry : fitted) {
             if (seat == Seat::switch_) {
-                models.switch_ = switch_model(entry.lot.part, end);
+                std::optional<double> gate;
+                if (const auto& drive = setup.converter.drive.voltage) gate = end == End::best ? drive->highest : drive->lowest;
+                models.switch_ = switch_model(entry.lot.part, end, gate);
                 models.switch_count = entry.count;
             } else if (seat == Seat::rectifier) {
                 models.rectifier = rectifier_model(entry.lot.part, entry.count, end);
@@ -126,6 +129,28 @@ namespace {
 
 [[noreturn]] void lacks(const Converter& converter, const std::string& field, const std::string& message, const std::string& expected) {
     throw InputError(Fault{{converter.file, 0, 0}, field, message, expected});
+}
+
+/// Mean voltage across the coupling capacitor [V]: windings carry none, so each of its nodes stands where a winding ties it.
+double coupling_bias(const Topology& topology, const At& at) {
+    std::vector<std::optional<double>> potential(topology.nodes.size());
+    potential[0] = 0;
+    for (const Branch& branch : topology.branches) {
+        if (branch.kind == BranchKind::source) potential[branch.from] = at.input_voltage;
+        if (branch.kind == BranchKind::load) {
+            if (branch.from == 0) potential[branch.to] = -at.output_voltage;
+            else potential[branch.from] = at.output_voltage;
+        }
+    }
+    for (std::size_t round = 0; round < topology.nodes.size(); ++round)
+        for (const Branch& branch : topology.branches) {
+            if (branch.kind != BranchKind::primary && branch.kind != BranchKind::secondary) continue;
+            if (potential[branch.from] && !potential[branch.to]) potential[branch.to] = potential[branch.from];
+            if (potential[branch.to] && !potential[branch.from]) potential[branch.from] = potential[branch.to];
+        }
+    for (const Branch& branch : topology.branches)
+        if (branch.seat == Seat::coupling_capacitor) return std::abs(potential[branch.from].value_or(0) - potential[branch.to].value_or(0));
+    return 0;
 }
 
 std::vector<CapacitorValues> bank_of(const Setup& setup, const Models& models, Seat seat, double voltage, End end) {
@@ -194,7 +219,7 @@ Circuit circuit_of(const Setup& setup, const Models& models, End end, const At& 
         lacks(converter, "seat.output_capacitor", "nothing is known of the output capacitor; nothing can be computed without its capacitance",
               "a fitted lot, figures, or an element");
     if (has_seat(*converter.topology, Seat::coupling_capacitor)) {
-        circuit.coupling_capacitor = bank_of(setup, models, Seat::coupling_capacitor, at.input_voltage, end);
+        circuit.coupling_capacitor = bank_of(setup, models, Seat::coupling_capacitor, coupling_bias(*converter.topology, at), end);
         if (circuit.coupling_capacitor.empty())
             lacks(converter, "seat.coupling_capacitor",
                   "nothing is known of the coupling capacitor; nothing can be computed without its capacitance",

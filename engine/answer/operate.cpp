@@ -7,6 +7,7 @@
 #include <cmath>
 
 #include "engine/loss/figures.hpp"
+#include "engine/loss/winding_loss.hpp"
 
 namespace binwright {
 namespace {
@@ -20,6 +21,22 @@ std::optional<double> junction_to_case(const Part& part, int count, int legs, En
     const auto power = end_value(part, Symbol::P_tot, end), highest = end_value(part, Symbol::T_jmax, end);
     if (power && highest && *power > 0) return busier * (*highest - kCelsiusZero - 25) / *power / count;  // definition of P_tot
     return std::nullopt;
+}
+
+/// What a file says of a core. The ripple of one winding tells its flux where the windings are separate, or the only one.
+CoreModel core_of(const WindingConfig& config, const Converter& converter) {
+    CoreModel core;
+    core.loss = config.core_loss;
+    const auto& winding = converter.winding;
+    const bool shared = has_secondary(*converter.topology) &&
+                        (converter.topology->transformer || winding.leakage || (winding.coupling && winding.coupling->highest > 0));
+    if (shared) return core;
+    core.inductance = config.inductance > 0 ? std::optional(config.inductance) : std::nullopt;
+    core.turns = config.turns;
+    core.area = config.core_area;
+    core.volume = config.core_volume;
+    core.steinmetz = config.steinmetz;
+    return core;
 }
 
 void add_heat(Bench& bench, Seat seat, const Part& part, int count, int legs) {
@@ -119,7 +136,19 @@ Bench bench_of(const Setup& setup, End end, const Allowances& allowances) {
         for (const BankModel& kind : kinds)
             not_included(kind.model.missing, "ESR", fmt::format("{} ESR", bench.setup->converter.reference(seat)));
     const auto& winding = setup.converter.winding;
-    if (winding.primary && !winding.primary->core_loss) bench.not_included.push_back("core loss: none is given for the primary winding");
+    const Topology& topology = *setup.converter.topology;
+    const auto told = [&](const char* name, const std::optional<WindingConfig>& config) {
+        if (!config) return;
+        const CoreModel core = core_of(*config, setup.converter);
+        if (!core_loss(core, {1, 1e5}))
+            bench.not_included.push_back(fmt::format("core loss: none is given for the {} winding, nor turns, core_area, core_volume and steinmetz", name));
+        if (!(config->resistance > 0)) bench.not_included.push_back(fmt::format("copper loss: no resistance is given for the {} winding", name));
+    };
+    told("primary", winding.primary);
+    if (has_secondary(topology) && !topology.transformer) told("secondary", winding.secondary ? winding.secondary : winding.primary);
+    if (has_secondary(topology) && !winding.coupling && !winding.leakage)
+        bench.assumptions.push_back(topology.transformer ? "no coupling or leakage is given: the windings are taken as perfectly coupled"
+                                                         : "no coupling is given: the windings are taken as separate chokes");
     return bench;
 }
 
@@ -215,7 +244,13 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         const double charge = rectifier_loss_now.junction + rectifier_loss_now.recovery;
         const double extra_switch = switch_loss_now.overlap + switch_loss_now.output + charge;
         const double extra_rectifier = heat.stable || bench.heated.empty() ? rectifier_loss_now.reverse : 0;
-        const double core_first = first.core_loss.value_or(0), core_second = second != nullptr ? second->core_loss.value_or(0) : 0;
+        const auto core = [&](const WindingConfig& config, const WindingStress& stress, double inductance) {
+            CoreModel model = core_of(config, setup.converter);
+            model.inductance = inductance;
+            return core_loss(model, {std::max(0.0, stress.current_peak - stress.current_min), at.frequency}).value_or(0);
+        };
+        const double core_first = core(first, state.primary, circuit.primary.inductance);
+        const double core_second = second != nullptr ? core(*second, state.secondary, circuit.secondary.inductance) : 0;
         const double extras[] = {extra_switch, extra_rectifier, core_first, core_second};
         const double currents[] = {state.switch_.current_rms, state.rectifier.current_rms, state.primary.current_rms, state.secondary.current_rms};
         const double peaks[] = {state.switch_.current_peak, state.rectifier.current_peak, state.primary.current_peak, state.secondary.current_peak};

@@ -312,7 +312,7 @@ Sight sight_of(const Bench& bench) {
                 const bool shared = entries > 1 && !model.resistance;
                 if (shared) lacks(seat, entry, Stress::ripple_current, "ESR");
                 else see(seat, entry, Stress::ripple_current);
-                if (model.ripple && !shared) {
+                if (ripple_rise(model, 0) && !shared) {
                     see(seat, entry, Stress::hot_spot_temperature);
                     if (model.life && model.highest_temperature && capacitor_life(model, 300)) see(seat, entry, Stress::life);
                     else lacks(seat, entry, Stress::life, model.life ? "T_max" : "life");
