@@ -5,9 +5,12 @@
 
 #include <algorithm>
 #include <array>
+#include <atomic>
 #include <cmath>
+#include <exception>
 #include <map>
 #include <set>
+#include <thread>
 
 #include "engine/answer/exposure.hpp"
 #include "engine/answer/operate.hpp"
@@ -25,6 +28,9 @@ struct Spot {
     }
 };
 
+constexpr double kSearching = 1e-4;         ///< how well a point is known that is only compared with others
+constexpr std::size_t kWorthAThread = 12;   ///< points; a thread costs about as much as one of them
+
 class Search {
   public:
     Search(const Setup& setup, End end, const Allowances& allowances, const Progress& progress)
@@ -32,20 +38,12 @@ class Search {
         make_variants(end, allowances);
         sight_ = sight_of(benches_.front());
         worst_.assign(sight_.keys.size(), {});
-        solvers_ = std::vector<Solver>(benches_.size());
+        for (auto& solvers : solvers_) solvers = std::vector<Solver>(benches_.size());
     }
 
     Exposure run() {
-        std::vector<Spot> grid = make_grid();
-        std::size_t done = 0;
-        for (const Spot& spot : grid) {
-            visit(spot);
-            report(0.5 * static_cast<double>(++done) / static_cast<double>(grid.size()));
-        }
-        for (std::size_t k = 0; k < sight_.keys.size(); ++k) {
-            refine(k);
-            report(0.5 + 0.5 * static_cast<double>(k + 1) / static_cast<double>(sight_.keys.size()));
-        }
+        visit(make_grid(), 0, 0.5);
+        refine();
         return collect();
     }
 
@@ -59,10 +57,10 @@ class Search {
     const Progress& progress_;
     OperatingRange range_;
     std::vector<Bench> benches_;
-    std::vector<Solver> solvers_;
+    std::array<std::vector<Solver>, 2> solvers_;  ///< a thread's own, one a variant
     Sight sight_;
     std::vector<Worst> worst_;
-    std::map<Spot, std::vector<double>> seen_;
+    std::set<Spot> visited_;
     std::vector<std::string> warnings_;
     int points_ = 0, reached_ = 0;
     std::optional<Spot> unreached_;
@@ -161,29 +159,70 @@ class Search {
         if (progress_ && !progress_(share)) throw Stopped();
     }
 
-    const std::vector<double>& visit(const Spot& spot) {
-        const auto known = seen_.find(spot);
-        if (known != seen_.end()) return known->second;
+    /// What is kept of one point.
+    struct Seen {
+        std::vector<double> values;
+        bool reached = false, stable = false;
+        double loss = 0;
+        std::vector<std::string> warnings;
+    };
+
+    Seen see(const Spot& spot, std::vector<Solver>& solvers) const {
         const Bench& bench = benches_[spot.variant];
         const At where = at(spot);
-        const Operated operated = operate(bench, where, solvers_[spot.variant]);
+        const Operated operated = operate(bench, where, solvers[spot.variant], kSearching);
+        Seen seen{look(bench, sight_, where, operated), operated.state.reached, operated.stable, 0, operated.state.warnings};
+        for (const Loss& one : operated.losses) seen.loss += one.power;
+        return seen;
+    }
+
+    void keep(const Spot& spot, const Seen& seen) {
         ++points_;
-        if (operated.state.reached) ++reached_;
+        if (seen.reached) ++reached_;
         else if (!unreached_) unreached_ = spot;
-        if (!operated.stable) runaway_ = true;
-        double loss = 0;
-        for (const Loss& one : operated.losses) loss += one.power;
-        if (operated.stable && loss > most_loss_) most_loss_ = loss, hottest_ = spot;
-        for (const std::string& warning : operated.state.warnings)
+        if (!seen.stable) runaway_ = true;
+        if (seen.stable && seen.loss > most_loss_) most_loss_ = seen.loss, hottest_ = spot;
+        for (const std::string& warning : seen.warnings)
             if (std::find(warnings_.begin(), warnings_.end(), warning) == warnings_.end() && warnings_.size() < 8) warnings_.push_back(warning);
-        std::vector<double> values = look(bench, sight_, where, operated);
-        for (std::size_t k = 0; k < values.size(); ++k) {
-            if (!std::isfinite(values[k])) continue;
+        for (std::size_t k = 0; k < seen.values.size(); ++k) {
+            if (!std::isfinite(seen.values[k])) continue;
             Worst& worst = worst_[k];
-            const bool worse = !worst.any || (sight_.keys[k].lowest_is_worst() ? values[k] < worst.value : values[k] > worst.value);
-            if (worse) worst = {true, values[k], spot};
+            const bool worse = !worst.any || (sight_.keys[k].lowest_is_worst() ? seen.values[k] < worst.value : seen.values[k] > worst.value);
+            if (worse) worst = {true, seen.values[k], spot};
         }
-        return seen_.emplace(spot, std::move(values)).first->second;
+        visited_.insert(spot);
+    }
+
+    /// Looks at those not seen before, on two threads where there are enough of them; keeps them in their order. Progress runs from one share to the other.
+    void visit(std::vector<Spot> spots, double from, double to) {
+        std::set<Spot> fresh;
+        std::erase_if(spots, [&](const Spot& spot) { return visited_.count(spot) > 0 || !fresh.insert(spot).second; });
+        std::vector<Seen> seen(spots.size());
+        std::atomic<bool> halt{false};
+        std::exception_ptr wrong[2];
+        // Every second point each: what a solver saw before never depends on the clock, nor does the last digit.
+        const std::size_t threads = spots.size() < kWorthAThread ? 1 : 2;
+        const auto work = [&](int thread) {
+            try {
+                for (std::size_t k = thread; k < spots.size() && !halt; k += threads) {
+                    seen[k] = see(spots[k], solvers_[thread]);
+                    if (thread == 0) report(from + (to - from) * static_cast<double>(k + 1) / static_cast<double>(spots.size()));
+                }
+            } catch (...) {
+                wrong[thread] = std::current_exception();
+                halt = true;
+            }
+        };
+        if (threads == 1) {
+            work(0);
+        } else {
+            std::thread other(work, 1);
+            work(0);
+            other.join();
+        }
+        for (const std::exception_ptr& one : wrong)
+            if (one) std::rethrow_exception(one);
+        for (std::size_t k = 0; k < spots.size(); ++k) keep(spots[k], seen[k]);
     }
 
     [[nodiscard]] bool at_corner(const Spot& spot) const {
@@ -192,26 +231,40 @@ class Search {
         return true;
     }
 
-    /// Compass search from the worst grid point of one stress. From a corner a short look inwards tells whether the range hides
-    /// more; inside, the step is halved until the point is known to a four hundredth of the range.
-    void refine(std::size_t k) {
-        if (!worst_[k].any) return;
-        double step = at_corner(worst_[k].spot) ? 0.06 : 0.25;
-        for (int round = 0; round < 24 && step > 0.0025; ++round) {
-            const Spot from = worst_[k].spot;
-            for (int d = 0; d < 4; ++d) {
-                if (dimension(d).single()) continue;
-                if (d == 2 && setup_.converter.operating.load != LoadKind::current) continue;
-                for (const double sign : {-1.0, 1.0}) {
-                    Spot to = from;
-                    to.share[d] = std::clamp(from.share[d] + sign * step, 0.0, 1.0);
-                    if (to.share[d] != from.share[d]) visit(to);
+    /// Compass search from the worst grid point of every stress, all of them together. From a corner a short look inwards tells
+    /// whether the range hides more; inside, the step is halved until the point is known to a four hundredth of the range.
+    void refine() {
+        struct Walk {
+            std::size_t key;
+            double step;
+            Spot from;
+        };
+        std::vector<Walk> walks;
+        for (std::size_t k = 0; k < worst_.size(); ++k)
+            if (worst_[k].any) walks.push_back({k, at_corner(worst_[k].spot) ? 0.06 : 0.25, {}});
+        constexpr int kRounds = 24;
+        for (int round = 0; round < kRounds && !walks.empty(); ++round) {
+            std::vector<Spot> around;
+            for (Walk& walk : walks) {
+                walk.from = worst_[walk.key].spot;
+                for (int d = 0; d < 4; ++d) {
+                    if (dimension(d).single()) continue;
+                    if (d == 2 && setup_.converter.operating.load != LoadKind::current) continue;
+                    for (const double sign : {-1.0, 1.0}) {
+                        Spot to = walk.from;
+                        to.share[d] = std::clamp(walk.from.share[d] + sign * walk.step, 0.0, 1.0);
+                        if (to.share[d] != walk.from.share[d]) around.push_back(to);
+                    }
                 }
             }
-            const bool moved = worst_[k].spot < from || from < worst_[k].spot;
-            if (moved) continue;
-            if (at_corner(from)) return;
-            step *= 0.5;
+            visit(std::move(around), 0.5 + 0.5 * round / kRounds, 0.5 + 0.5 * (round + 1) / kRounds);
+            std::erase_if(walks, [&](Walk& walk) {
+                const Spot& now = worst_[walk.key].spot;
+                if (now < walk.from || walk.from < now) return false;
+                if (at_corner(now)) return true;
+                walk.step *= 0.5;
+                return !(walk.step > 0.0025);
+            });
         }
     }
 
@@ -226,7 +279,7 @@ class Search {
         const auto operated_at = [&](const Spot& spot) -> const Operated& {
             const auto found = again.find(spot);
             if (found != again.end()) return found->second;
-            return again.emplace(spot, operate(benches_[spot.variant], at(spot), solvers_[spot.variant])).first->second;
+            return again.emplace(spot, operate(benches_[spot.variant], at(spot), solvers_[0][spot.variant])).first->second;
         };
         for (std::size_t k = 0; k < sight_.keys.size(); ++k) {
             const StressKey& key = sight_.keys[k];

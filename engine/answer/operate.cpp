@@ -152,7 +152,7 @@ Bench bench_of(const Setup& setup, End end, const Allowances& allowances) {
     return bench;
 }
 
-Operated operate(const Bench& bench, const At& at, Solver& solver) {
+Operated operate(const Bench& bench, const At& at, Solver& solver, double nothing) {
     const Setup& setup = *bench.setup;
     const Models& models = bench.models;
     Operated result;
@@ -310,7 +310,7 @@ Operated operate(const Bench& bench, const At& at, Solver& solver) {
         if (circuit.topology->transformer && circuit.coupling < 1)
             add("leakage inductance", {}, 0.5 * circuit.primary.inductance * (1 - circuit.coupling * circuit.coupling) * state.switch_.current_turn_off *
                                               state.switch_.current_turn_off * at.frequency);
-        if (moved < 1e-6 || (!result.stable && round > 3) || round == 79) {
+        if (moved < nothing || (!result.stable && round > 3) || round == 79) {
             result.state = state;
             const double beside = direct[0] + direct[1] + direct[2] + direct[3];
             result.state.input_power += beside;

@@ -43,6 +43,7 @@ struct Operated {
 /// leakage, core) are series resistances P/I_rms² in it, until nothing changes; what a branch of
 /// little current could take up only with a drop that bends the waveforms is drawn from the input beside the network. A loss
 /// that has run away is not returned.
-[[nodiscard]] Operated operate(const Bench& bench, const At& at, Solver& solver);
+/// `nothing`: the largest change that counts as none, of losses as a share of the input power and of temperatures by 300 K.
+[[nodiscard]] Operated operate(const Bench& bench, const At& at, Solver& solver, double nothing = 1e-6);
 
 }  // namespace binwright

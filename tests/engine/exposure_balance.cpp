@@ -1,7 +1,6 @@
 // SPDX-License-Identifier: GPL-3.0-or-later
 // What every position sees: sums that add up, and a worst that nothing in the range beats.
 #include <catch2/catch.hpp>
-#include <chrono>
 #include <cmath>
 #include <random>
 
@@ -141,4 +140,26 @@ TEST_CASE("losses returned to a branch of little current do not bend what others
             CHECK(operated.state.switch_.voltage_peak < vin * 1.03 + 0.7);
             CHECK(operated.state.input_power == Approx(operated.state.output_power + total(operated.losses)).epsilon(1e-6));
         }
+}
+
+TEST_CASE("the same question has the same answer to the last digit, and can be stopped", "[engine][exposure]") {
+    const Setup setup = setup_of(supply_text());
+    const Exposure first = expose(setup, End::worst, {}), again = expose(setup, End::worst, {});
+    for (const auto& [seat, parts] : first.seats)
+        for (std::size_t entry = 0; entry < parts.size(); ++entry)
+            for (const StressValue& value : parts[entry].stresses) {
+                const StressValue* other = again.seats.at(seat)[entry].find(value.stress);
+                REQUIRE(other != nullptr);
+                CHECK(value.value == other->value);
+                CHECK(value.at.output_current == other->at.output_current);
+            }
+    double last = 0;
+    (void)expose(setup, End::worst, {}, [&](double share) {
+        CHECK(share >= last);
+        CHECK(share <= 1);
+        last = share;
+        return true;
+    });
+    CHECK(last > 0.5);
+    CHECK_THROWS_AS(expose(setup, End::worst, {}, [](double share) { return share < 0.3; }), Stopped);
 }
