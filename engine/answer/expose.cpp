@@ -29,6 +29,7 @@ struct Spot {
 };
 
 constexpr double kSearching = 1e-4;         ///< how well a point is known that is only compared with others
+constexpr double kTightest = 0.999;         ///< coupling of two windings, as far as the network takes it
 constexpr std::size_t kWorthAThread = 12;   ///< points; a thread costs about as much as one of them
 
 class Search {
@@ -88,6 +89,16 @@ class Search {
             couplings.clear();
             for (const double leakage : {winding.leakage->lowest, winding.leakage->highest})
                 couplings.push_back(std::sqrt(std::max(0.0, 1 - leakage / winding.primary->inductance)));
+        }
+        // One value of a coupling or a leakage: what leaks may be half as much again, or half.
+        if (winding.coupling && winding.coupling->single() && winding.coupling->highest > 0 && winding.coupling->highest < 1) {
+            const double leaks = 1 - winding.coupling->highest;
+            couplings = {1 - std::min(1.0, 1.5 * leaks), std::min(kTightest, 1 - 0.5 * leaks)};
+        }
+        if (winding.leakage && winding.leakage->single() && winding.leakage->highest > 0 && winding.primary) {
+            couplings.clear();
+            for (const double share : {0.5, 1.5})
+                couplings.push_back(std::sqrt(std::max(0.0, 1 - share * winding.leakage->highest / winding.primary->inductance)));
         }
         Bench base = bench_of(setup_, end, allowances);
         for (const double sign : signs)
@@ -320,6 +331,10 @@ class Search {
                                                            format_quantity(hottest.gate_power, Unit::watt)));
         }
         if (!setup_.converter.drive.maximum_duty) exposure.assumptions.push_back("no duty limit is given");
+        const auto& winding = setup_.converter.winding;
+        const bool coupled = winding.coupling && winding.coupling->single() && winding.coupling->highest > 0 && winding.coupling->highest < 1;
+        if (coupled || (winding.leakage && winding.leakage->single() && winding.leakage->highest > 0))
+            exposure.assumptions.push_back("the leakage of the windings taken as uncertain by half");
         if (!setup_.converter.source) exposure.assumptions.push_back("no [source]: the input capacitor carries all of the input ripple");
         return exposure;
     }

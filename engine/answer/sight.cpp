@@ -131,6 +131,7 @@ Terms rectifier_voltage_terms(const Bench& bench, const At& at, const Operated& 
     const SeatConfig& config = bench.setup->converter.seat(Seat::rectifier);
     if (config.overshoot) {
         terms.push_back({"overshoot, measured", config.overshoot->voltage});
+        rests_on.push_back("overshoot measured at an unstated reverse voltage, taken as it is");
     } else {
         const double share = bench.allowances.rectifier_overshoot;
         terms.push_back({"overshoot, assumed", share * blocked});

@@ -163,3 +163,28 @@ TEST_CASE("the same question has the same answer to the last digit, and can be s
     CHECK(last > 0.5);
     CHECK_THROWS_AS(expose(setup, End::worst, {}, [](double share) { return share < 0.3; }), Stopped);
 }
+
+TEST_CASE("losses add up with coupled and with leaking windings too", "[engine][exposure]") {
+    struct Case {
+        const char* topology;
+        std::vector<std::string> changes;
+    };
+    for (const Case& one : {Case{"sepic", {"winding.coupling=0.95"}}, Case{"cuk", {"winding.coupling=0.6"}}, Case{"zeta", {"winding.coupling=0.9"}},
+                            Case{"flyback", {"winding.leakage=0.3 uH"}}, Case{"flyback", {"winding.coupling=0.98"}}}) {
+        std::vector<std::string> changes = one.changes;
+        std::string text = supply_text(one.topology, std::string(one.topology) == "flyback" ? "[clamp]\nvoltage = \"60 V\"\n" : "");
+        if (const auto at = text.find("coupling = 0.0\n"); at != std::string::npos) text.erase(at, 15);
+        const Setup setup = setup_of(text, changes);
+        const Bench bench = bench_of(setup, End::worst, {});
+        Solver solver;
+        for (const double current : {0.2, 2.0}) {
+            const Operated operated = operate(bench, {12, 12, current, 100e3, kCelsiusZero + 45}, solver);
+            INFO(one.topology << " " << one.changes.front() << " " << current << " A");
+            double sum = total(operated.losses);
+            std::string list;
+            for (const Loss& loss : operated.losses) list += loss.name + " " + std::to_string(loss.power) + "\n";
+            INFO(list);
+            CHECK(std::abs(sum - operated.state.input_power + operated.state.output_power) <= 1e-6 * operated.state.input_power);
+        }
+    }
+}
