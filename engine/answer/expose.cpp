@@ -9,6 +9,7 @@
 #include <cmath>
 #include <exception>
 #include <map>
+#include <numbers>
 #include <set>
 #include <thread>
 
@@ -38,6 +39,7 @@ class Search {
         : setup_(setup), progress_(progress), range_(widened(setup.converter.operating)) {
         make_variants(end, allowances);
         sight_ = sight_of(benches_.front());
+        find_resonances();
         worst_.assign(sight_.keys.size(), {});
         for (auto& solvers : solvers_) solvers = std::vector<Solver>(benches_.size());
     }
@@ -62,6 +64,7 @@ class Search {
     Sight sight_;
     std::vector<Worst> worst_;
     std::set<Spot> visited_;
+    std::vector<double> resonances_;  ///< inside the range of the switching frequency, as shares of it; overtones too
     std::vector<std::string> warnings_;
     int points_ = 0, reached_ = 0;
     std::optional<Spot> unreached_;
@@ -111,6 +114,53 @@ class Search {
             }
     }
 
+    /// Input filter, coupling capacitor with both windings, and with what leaks between them: a switching frequency that meets
+    /// one of these, or whose overtone does, is a worst point inside the range; one nearby is worth a word.
+    void find_resonances() {
+        struct Resonance {
+            const char* name;
+            double frequency;
+        };
+        std::vector<Resonance> found;
+        const auto sum_of = [](const std::vector<CapacitorValues>& bank) {
+            double sum = 0;
+            for (const CapacitorValues& one : bank) sum += one.capacitance;
+            return sum;
+        };
+        const auto note = [&](const char* name, double inductance, double capacitance) {
+            if (inductance > 0 && capacitance > 0) found.push_back({name, 1 / (2 * std::numbers::pi * std::sqrt(inductance * capacitance))});
+        };
+        const Range input = dimension(0);
+        for (const Bench& bench : benches_)
+            for (const double voltage : {input.lowest, input.middle(), input.highest}) {  // ceramics change with it
+                At where = typical_point(setup_.converter);
+                where.input_voltage = voltage;
+                const Circuit circuit = circuit_of(setup_, bench.models, bench.end, where);
+                if (circuit.source == SourceKind::impedance) note("the source's inductance with the input capacitor", circuit.source_inductance, sum_of(circuit.input));
+                if (circuit.coupling_capacitor.empty()) continue;
+                const double k = bench.coupling.value_or(circuit.coupling), series = sum_of(circuit.coupling_capacitor);
+                const double first = circuit.primary.inductance * bench.primary_factor, second = circuit.secondary.inductance * bench.secondary_factor;
+                note("the windings with the coupling capacitor", first + second - 2 * k * std::sqrt(first * second), series);
+                if (k > 0) note("the leakage of the windings with the coupling capacitor", (1 - k * k) * second, series);
+            }
+        const Range f = dimension(3);
+        for (const Resonance& one : found) {
+            if (one.frequency > 0.5 * f.lowest && one.frequency < 2 * f.highest) {
+                const std::string said = fmt::format("{}: resonant at {}, less than a factor of 2 from the switching frequency", one.name,
+                                                     format_quantity(one.frequency, Unit::hertz));
+                const bool told = std::any_of(warnings_.begin(), warnings_.end(), [&](const std::string& other) { return other.starts_with(one.name); });
+                if (!told) warnings_.push_back(said);
+            }
+            for (int overtone = 1; overtone <= 3; ++overtone) {
+                if (f.single()) break;
+                const double share = (one.frequency / overtone - f.lowest) / (f.highest - f.lowest);
+                const bool new_one = std::none_of(resonances_.begin(), resonances_.end(), [&](double other) { return std::abs(other - share) < 0.003; });
+                if (share > 0 && share < 1 && new_one) resonances_.push_back(share);
+            }
+        }
+        std::sort(resonances_.begin(), resonances_.end());
+    }
+
     [[nodiscard]] Range dimension(int k) const { return range_.get(kOperating[k].quantity); }
 
     /// Currents are searched in logarithm where the range is wide: light load is where modes change.
@@ -144,6 +194,12 @@ class Search {
             case OperatingQuantity::output_current:
                 if (setup_.converter.operating.load != LoadKind::current) return {1};
                 return {0, 0.5, 0.8, 1};
+            case OperatingQuantity::frequency: {
+                std::vector<double> all = {0};
+                all.insert(all.end(), resonances_.begin(), resonances_.end());
+                all.push_back(1);
+                return all;
+            }
             default: return {0, 1};
         }
     }
@@ -161,6 +217,7 @@ class Search {
                                 const bool inside = a == 0.5 || b == 0.5 || (c > 0 && c < 1);
                                 const bool cold = e < 1 && !dimension(4).single();
                                 if (inside && (cold || variant > 0)) continue;
+                                if (d > 0 && d < 1 && (cold || c < 1)) continue;  // resonances: where most flows
                                 grid.push_back({{a, b, c, d, e}, variant});
                             }
         return grid;

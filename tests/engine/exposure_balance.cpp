@@ -188,3 +188,25 @@ TEST_CASE("losses add up with coupled and with leaking windings too", "[engine][
         }
     }
 }
+
+TEST_CASE("a resonance of the input filter inside the range of frequencies is found and told", "[engine][exposure]") {
+    // By hand: 1 µH and 4.7 µF resonate at 73.4 kHz; there, and at half of it, the input capacitor carries several times as much.
+    Setup setup = setup_of(supply_text("boost"), {"operating.frequency=[\"30 kHz\", \"110 kHz\"]"});
+    Lot small = *find_specimen("film");
+    for (Figure& figure : small.part.figures)
+        if (figure.symbol == Symbol::C) figure.value = {4.7e-6, 4.7e-6, 4.7e-6};
+    setup = with_fitted(setup, Seat::input_capacitor, {{small, 1}});
+    const Exposure exposure = expose(setup, End::worst, {});
+    const StressValue* ripple = exposure.seats.at(Seat::input_capacitor)[0].find(Stress::ripple_current);
+    REQUIRE(ripple != nullptr);
+    CHECK(ripple->at.frequency == Approx(73.4e3).epsilon(0.02));
+    const auto ends = [&](const char* f) {
+        const Setup at = with_fitted(setup_of(supply_text("boost"), {std::string("operating.frequency=") + f}), Seat::input_capacitor, {{small, 1}});
+        return expose(at, End::worst, {}).seats.at(Seat::input_capacitor)[0].find(Stress::ripple_current)->value;
+    };
+    CHECK(ripple->value > 3 * ends("110 kHz"));
+    bool told = false;
+    for (const std::string& warning : exposure.warnings) told = told || warning.find("resonant at 73.4 kHz") != std::string::npos;
+    CHECK(told);
+    for (const std::string& warning : expose(setup_of(supply_text("boost")), End::worst, {}).warnings) CHECK(warning.find("resonant") == std::string::npos);
+}
