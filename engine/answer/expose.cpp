@@ -235,10 +235,20 @@ class Search {
         std::vector<std::string> warnings;
     };
 
+    /// A point that cannot be computed is not left out: the fault says where it lies.
+    static Operated operated_at(const Bench& bench, const At& where, Solver& solver) {
+        try {
+            return operate(bench, where, solver, kSearching);
+        } catch (const OutsideModel& error) {
+            throw OutsideModel(fmt::format("at input {}, output {} and {}: {}", format_quantity(where.input_voltage, Unit::volt),
+                                           format_quantity(where.output_voltage, Unit::volt), format_quantity(where.output_current, Unit::ampere), error.what()));
+        }
+    }
+
     Seen see(const Spot& spot, std::vector<Solver>& solvers) const {
         const Bench& bench = benches_[spot.variant];
         const At where = at(spot);
-        const Operated operated = operate(bench, where, solvers[spot.variant], kSearching);
+        const Operated operated = operated_at(bench, where, solvers[spot.variant]);
         Seen seen{look(bench, sight_, where, operated), operated.state.reached, operated.stable, 0, operated.state.warnings};
         for (const Loss& one : operated.losses) seen.loss += one.power;
         return seen;

@@ -150,3 +150,20 @@ TEST_CASE("electrical points take pairs and say which of them they do not unders
         CHECK(point.state.output_ripple <= worst("output_ripple"));
     }
 }
+
+TEST_CASE("a point of the range that cannot be computed is named and not left out", "[engine][exposure]") {
+    // The network is made for 1 kHz to 5 MHz; a range that leaves it is no range to say of that everything holds.
+    Setup setup = setup_of(supply_text());
+    setup.converter.operating.frequency = {100e3, 6e6};
+    CHECK_THROWS_AS(expose(setup, End::worst, {}), OutsideModel);
+    CHECK_THROWS_WITH(expose(setup, End::worst, {}), Catch::Matchers::StartsWith("at input 10.5 V, output 8.73 V and 100 mA: "));
+    // Nothing drawn, and an on-time that may not be shorter: the output climbs, and that is no regulation.
+    const Setup idle = setup_of(supply_text(), {"operating.output_current=[\"0 A\", \"2.5 A\"]"});
+    const Exposure exposure = expose(idle, End::worst, {});
+    const StressValue* regulation = exposure.converter.find(Stress::regulation);
+    REQUIRE(regulation != nullptr);
+    CHECK(regulation->value < 1);
+    CHECK(regulation->at.output_current == 0);
+    REQUIRE_FALSE(regulation->rests_on.empty());
+    CHECK(regulation->rests_on.front().find("least load") != std::string::npos);
+}
