@@ -1,0 +1,205 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+#include <QAbstractItemModelTester>
+#include <QAccessible>
+#include <QDir>
+#include <QStyleFactory>
+
+#include "engine/words/words.hpp"
+#include "tests/app/window/support.hpp"
+
+using namespace binwright;
+
+TEST_CASE("raising the output from 15 V to 22 V rejects a 25 V lot and says by how much", "[app][window]") {
+    DemoWindow demo;
+    named<CircuitStrip>(*demo.window, "circuit_strip")->choose(Seat::output_capacitor);
+    demo.settle();
+    const Candidate* before = demo.candidate("114-Z");
+    REQUIRE(before != nullptr);
+    CHECK(before->report.verdict == Verdict::holds);
+    CHECK(named<QLabel>(*demo.window, "summary")->text() == "9–15 V out, 0.1–2.5 A: every part holds.");
+
+    demo.enter("output_voltage_highest", "22 V");
+    CHECK(named<QLabel>(*demo.window, "output_voltage_was")->text() == "was 9 V … 15 V");
+    demo.settle();
+    const Candidate* after = demo.candidate("114-Z");
+    REQUIRE(after != nullptr);
+    CHECK(after->report.verdict == Verdict::rejected);
+    const Wording text = words(after->report.findings.front());
+    // 22 V and half of its ripple across 25 V under an 80 % rule: 20 V allowed (common practice, no source).
+    CHECK(text.line.starts_with("22.1 V across a 25 V part (88 %); the rule allows 20.0 V: 2.1 V too much"));
+    CHECK(text.mend.find("a 35 V part or higher") != std::string::npos);
+    CHECK(named<QLabel>(*demo.window, "summary")->text().contains("rejected"));
+    CHECK(named<CircuitStrip>(*demo.window, "circuit_strip")->tag_text(Seat::output_capacitor).contains("rejected"));
+
+    QTest::mouseClick(named<QPushButton>(*demo.window, "drop"), Qt::LeftButton);
+    demo.settle();
+    CHECK(demo.candidate("114-Z")->report.verdict == Verdict::holds);
+    CHECK_FALSE(demo.window->document().unsaved());
+}
+
+TEST_CASE("a value that cannot be read is refused where it stands and changes nothing", "[app][window]") {
+    DemoWindow demo;
+    demo.enter("output_voltage_highest", "15 A");
+    CHECK(named<QLabel>(*demo.window, "operating_trouble")->text() == "output voltage: \"A\" is a current, not a voltage");
+    CHECK_FALSE(demo.window->document().unsaved());
+    demo.enter("output_voltage_highest", "5 V");
+    CHECK(named<QLabel>(*demo.window, "operating_trouble")->text() == "output voltage: the lowest, 9 V, is above the highest, 5 V");
+    demo.settle();
+}
+
+TEST_CASE("saving keeps every comment and line but the changed one", "[app][window]") {
+    DemoWindow demo;
+    const std::string before = slurp(demo.path);
+    demo.enter("output_voltage_highest", "18 V");
+    CHECK(demo.window->isWindowModified());
+    REQUIRE(demo.window->save());
+    const std::string after = slurp(demo.path);
+    std::istringstream old_text(before), new_text(after);
+    int different = 0;
+    for (std::string a, b; std::getline(old_text, a) && std::getline(new_text, b);) {
+        if (a == b) continue;
+        ++different;
+        CHECK(a == "output_voltage   = [\"9 V\", \"15 V\"]      # set by the trimmer");
+        CHECK(b == "output_voltage   = [\"9 V\", \"18 V\"]      # set by the trimmer");
+    }
+    CHECK(different == 1);
+    CHECK_FALSE(demo.window->isWindowModified());
+    demo.settle();
+}
+
+TEST_CASE("closing asks about unsaved changes and stays when told to", "[app][window]") {
+    DemoWindow demo;
+    demo.enter("output_voltage_highest", "18 V");
+    demo.answers.unsaved_answers = {Ask::Unsaved::stay, Ask::Unsaved::save};
+    CHECK_FALSE(demo.window->close());
+    CHECK(demo.window->close());
+    CHECK(slurp(demo.path).find("[\"9 V\", \"18 V\"]") != std::string::npos);
+}
+
+TEST_CASE("a faulty file is not opened and every fault is told with its place", "[app][window]") {
+    DemoWindow demo;
+    demo.answers.tell_expected = true;
+    demo.window->open(QString(BINWRIGHT_SOURCE) + "/tests/broken/converter-ten-faults.toml");
+    REQUIRE(demo.answers.told.size() == 1);
+    CHECK(demo.answers.told.front().count('\n') >= 9);
+    CHECK(demo.answers.told.front().contains(":3:1: unknown key `titel`; did you mean `title`?"));
+    CHECK(demo.window->document().path == demo.path);
+    demo.settle();
+}
+
+TEST_CASE("five questions make a new converter that is judged at once", "[app][window]") {
+    DemoWindow demo;
+    on_dialog("new_form", [](QDialog& form) {
+        form.findChild<QComboBox*>("topology")->setCurrentText("boost");
+        form.findChild<QLineEdit*>("output")->setText("24");
+        QTest::mouseClick(form.findChild<QPushButton*>("ok"), Qt::LeftButton);
+        CHECK(form.isVisible());  // 24 of what?
+        CHECK(form.findChild<QLabel*>("output_trouble")->text().startsWith("24 has no unit. Write 24 V."));
+        form.findChild<QLineEdit*>("output")->setText("24 V");
+        form.findChild<QLineEdit*>("title")->setText("Lamp");
+        QTest::mouseClick(form.findChild<QPushButton*>("ok"), Qt::LeftButton);
+    });
+    demo.window->new_converter();
+    CHECK(demo.window->document().converter.topology->name == "boost");
+    CHECK(demo.window->document().converter.title == "Lamp");
+    CHECK(demo.window->document().path.empty());
+    demo.settle();
+    CHECK(demo.window->judgement()->report.verdict == Verdict::unproven);
+    demo.answers.unsaved_answers = {Ask::Unsaved::discard};
+    demo.window->close();
+}
+
+TEST_CASE("the bin page adds measures and takes back", "[app][window][bin]") {
+    DemoWindow demo;
+    auto* page = named<BinPage>(*demo.window, "bin_page");
+    auto* table = named<QTableView>(*demo.window, "bin_lots");
+    const int before = page->model()->rowCount();
+    on_dialog("add_lot", [](QDialog& form) {
+        form.findChild<QComboBox*>("part")->setCurrentText("Aluminium of the lighthouse 25 V");
+        form.findChild<QLineEdit*>("count")->setText("x");
+        form.findChild<QLineEdit*>("figures")->setText("U_R = 25 V; C = 470 µF; ESR = 60");
+        QTest::mouseClick(form.findChild<QPushButton*>("ok"), Qt::LeftButton);
+        CHECK(form.findChild<QLabel*>("count_trouble")->text() == "\"x\" is no whole number from 0 up");
+        CHECK(form.findChild<QLabel*>("figures_trouble")->text().contains("60 has no unit, and ESR needs one."));
+        form.findChild<QLineEdit*>("count")->setText("4");
+        form.findChild<QLineEdit*>("figures")->setText("U_R = 25 V; C = 470 µF; ESR = 60 mΩ @ 100 kHz");
+        QTest::mouseClick(form.findChild<QPushButton*>("ok"), Qt::LeftButton);
+    });
+    page->add();
+    REQUIRE(page->model()->rowCount() == before + 1);
+    table->selectRow(before);
+    on_dialog("measure_lot", [](QDialog& form) {
+        form.findChild<QLineEdit*>("reading")->setText("58 mΩ @ 100 kHz");
+        QTest::mouseClick(form.findChild<QPushButton*>("ok"), Qt::LeftButton);
+    });
+    page->measure();
+    CHECK(named<QTextBrowser>(*demo.window, "lot_sheet")->toPlainText().contains("58 mΩ"));
+    page->undo();
+    page->undo();
+    CHECK(page->model()->rowCount() == before);
+    CHECK(demo.window->store().history().size() == 3);
+    demo.settle();
+}
+
+TEST_CASE("the tables keep to the rules of models", "[app][window]") {
+    DemoWindow demo;
+    demo.settle();
+    auto* lots = named<SeatSheet>(*demo.window, "seat_sheet")->model();
+    QAbstractItemModelTester first(lots, QAbstractItemModelTester::FailureReportingMode::Fatal);
+    auto* bin = named<BinPage>(*demo.window, "bin_page")->model();
+    QAbstractItemModelTester second(bin, QAbstractItemModelTester::FailureReportingMode::Fatal);
+    lots->sort(CandidateModel::part, Qt::DescendingOrder);
+    lots->search("film");
+    for (int row = 0; row < lots->rowCount(); ++row) CHECK(lots->candidate(lots->index(row, 0))->lot.part.name.find("Film") != std::string::npos);
+    CHECK(lots->rowCount() == 3);
+    bin->search("pulled schottky");
+    CHECK(bin->rowCount() > 0);
+    bin->sort(BinModel::pieces, Qt::AscendingOrder);
+}
+
+TEST_CASE("everything that takes the keyboard has a name for a reader", "[app][window][accessible]") {
+    DemoWindow demo;
+    demo.settle();
+    for (QWidget* widget : demo.window->findChildren<QWidget*>()) {
+        if (widget->focusPolicy() == Qt::NoFocus || !widget->isVisibleTo(demo.window.get()) || widget->objectName().startsWith("qt_")) continue;
+        QAccessibleInterface* spoken = QAccessible::queryAccessibleInterface(widget);
+        INFO(widget->metaObject()->className() << " " << widget->objectName().toStdString());
+        REQUIRE(spoken != nullptr);
+        const bool inner = qobject_cast<QTabBar*>(widget) || widget->inherits("QTabWidget") || widget->inherits("QHeaderView") || widget->inherits("QSplitter");
+        CHECK((inner || !spoken->text(QAccessible::Name).isEmpty()));
+    }
+}
+
+TEST_CASE("pictures of the window in light and dark", "[app][window][pictures]") {
+    const QByteArray wanted = qgetenv("BINWRIGHT_SCREENSHOTS");
+    const QString folder = wanted.isEmpty() ? QString("screenshots") : QString::fromLocal8Bit(wanted);
+    QDir().mkpath(folder);
+    const QPalette light = QApplication::palette();
+    QPalette dark;
+    dark.setColor(QPalette::Window, QColor(0x20, 0x22, 0x25));
+    dark.setColor(QPalette::Base, QColor(0x18, 0x1a, 0x1c));
+    dark.setColor(QPalette::AlternateBase, QColor(0x22, 0x25, 0x28));
+    dark.setColor(QPalette::Button, QColor(0x2c, 0x2f, 0x33));
+    for (const auto role : {QPalette::WindowText, QPalette::Text, QPalette::ButtonText, QPalette::ToolTipText}) dark.setColor(role, QColor(0xe6, 0xe4, 0xde));
+    dark.setColor(QPalette::PlaceholderText, QColor(0x90, 0x90, 0x90));
+    dark.setColor(QPalette::Highlight, QColor(0x3a, 0x5f, 0x86));
+    dark.setColor(QPalette::HighlightedText, Qt::white);
+    dark.setColor(QPalette::Light, QColor(0x3a, 0x3e, 0x42));
+    dark.setColor(QPalette::Mid, QColor(0x12, 0x13, 0x15));
+    dark.setColor(QPalette::Dark, QColor(0x0c, 0x0d, 0x0e));
+    QApplication::setStyle(QStyleFactory::create("Fusion"));
+    for (const auto& [name, palette] : {std::pair<QString, QPalette>{"light", light}, {"dark", dark}}) {
+        QApplication::setPalette(palette);
+        DemoWindow demo;
+        demo.window->resize(name == "light" ? QSize(1280, 720) : QSize(1600, 1000));
+        demo.settle();
+        demo.enter("output_voltage_highest", "18 V");
+        demo.settle();
+        CHECK(demo.window->grab().save(folder + "/converter-" + name + ".png"));
+        named<QTabWidget>(*demo.window, "pages")->setCurrentIndex(1);
+        named<QTableView>(*demo.window, "bin_lots")->selectRow(5);
+        QTest::qWait(50);
+        CHECK(demo.window->grab().save(folder + "/bin-" + name + ".png"));
+    }
+    QApplication::setPalette(light);
+}
