@@ -55,6 +55,7 @@ BinPage::BinPage(Ask& ask, QWidget* parent) : QWidget(parent), ask_(ask) {
     search_->setAccessibleName("Search the bin");
     search_->setPlaceholderText("search the bin: label, part, place, note, origin, a figure");
     search_->setClearButtonEnabled(true);
+    write_on_paper(*search_);
     head->addWidget(search_, 1);
     const auto button = [&](const QString& name, const QString& text, void (BinPage::*action)()) {
         auto* made = new QPushButton(text, this);

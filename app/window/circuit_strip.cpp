@@ -86,6 +86,7 @@ std::vector<Seat> CircuitStrip::seats_in_order() const {
     return seats;
 }
 
+/// The circuit and the tags under it; the still drawings of the intervals stand beside them, so that no leader line crosses one.
 QRectF CircuitStrip::circuit_area() const {
     const double line = fontMetrics().height();
     return QRectF(rect()).adjusted(line * 2, line * 0.9, -line * 2 - width() * 0.24, -line * 8.2);
@@ -97,13 +98,13 @@ std::vector<CircuitStrip::Tag> CircuitStrip::tags() const {
     const double line = fontMetrics().height();
     const QRectF area = circuit_area();
     const std::vector<Seat> seats = seats_in_order();
-    const double room = (width() - line) / static_cast<double>(std::max<std::size_t>(1, seats.size()));
+    const double from = line * 0.5, room = (area.right() + line * 2 - from) / static_cast<double>(std::max<std::size_t>(1, seats.size()));
     for (std::size_t k = 0; k < seats.size(); ++k)
         for (const Branch& branch : topology_->branches) {
             if (branch.seat != seats[k]) continue;
             const QPointF anchor = place_of(*topology_, branch, area).middle();
             const double w = std::min(room - line * 0.6, line * 13.5);
-            double x = line * 0.5 + room * static_cast<double>(k) + (room - w) / 2;
+            const double x = from + room * static_cast<double>(k) + (room - w) / 2;
             all.push_back({seats[k], QRectF(x, height() - line * 5.9, w, line * 5.4), anchor});
         }
     return all;
@@ -173,7 +174,7 @@ void CircuitStrip::draw_intervals(QPainter& painter) const {
     const Ink ink = ink_of(palette());
     const double line = fontMetrics().height();
     const QRectF area = circuit_area();
-    const QRectF column(area.right() + line * 2.5, line * 0.4, width() - area.right() - line * 3.2, area.height() + line * 1.6);
+    const QRectF column(area.right() + line * 2.5, line * 0.4, width() - area.right() - line * 3.2, height() - line * 0.9);
     const std::size_t shown = std::min<std::size_t>(3, judgement_->intervals.size());
     const double each = column.height() / static_cast<double>(shown);
     for (std::size_t k = 0; k < shown; ++k) {
@@ -196,7 +197,7 @@ void CircuitStrip::draw_intervals(QPainter& painter) const {
             return branch.kind == BranchKind::source ? -value : value;  // its current leaves at the top
         };
         const double text = line * 1.15;
-        draw_circuit(painter, *topology_, box.adjusted(line * 0.4, line * 0.35, -line * 0.4, -text - line * 0.25), style);
+        draw_circuit(painter, *topology_, box.adjusted(line * 0.4, line * 0.7, -line * 0.4, -text - line * 0.35), style);
         painter.setPen(ink.quiet);
         const QString what = view.switch_on ? "switch on" : view.rectifier_on ? "rectifier conducts" : "both off";
         painter.drawText(QRectF(box.left(), box.bottom() - text, box.width(), text), Qt::AlignCenter,

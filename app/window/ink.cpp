@@ -58,6 +58,12 @@ void draw_verdict(QPainter& painter, const QRectF& box, Verdict verdict, const Q
     painter.restore();
 }
 
+void write_on_paper(QLineEdit& edit) {
+    edit.setFrame(false);
+    edit.setStyleSheet("QLineEdit { background: palette(base); border: 0; border-bottom: 1px solid palette(placeholder-text); padding: 2px 1px 1px 1px; }"
+                       "QLineEdit:focus { border-bottom: 2px solid palette(highlight); padding-bottom: 0; }");
+}
+
 QString verdict_word(Verdict verdict) { return qt(to_string(verdict)); }
 
 }  // namespace binwright

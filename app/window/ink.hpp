@@ -4,6 +4,7 @@
 #pragma once
 #include <QColor>
 #include <QPainter>
+#include <QLineEdit>
 #include <QPalette>
 
 #include "engine/answer/judge.hpp"
@@ -20,6 +21,9 @@ struct Ink {
 
 /// Filled disc: holds; open ring with a gap: unproven; barred disc: rejected; small square: not covered.
 void draw_verdict(QPainter& painter, const QRectF& box, Verdict verdict, const QPalette& palette);
+
+/// A place to write on: a line under it instead of a box, heavier where the keyboard is. Legible on light and dark paper.
+void write_on_paper(QLineEdit& edit);
 
 [[nodiscard]] QString verdict_word(Verdict verdict);
 [[nodiscard]] inline QString qt(std::string_view text) { return QString::fromUtf8(text.data(), static_cast<qsizetype>(text.size())); }

@@ -37,13 +37,23 @@ std::vector<IntervalView> intervals_at(const Setup& setup, const At& at) {
 Judge::Judge(QObject* parent) : QObject(parent) {}
 
 Judge::~Judge() {
-    end(check_);
-    end(rank_);
+    cancel();
+    sweep(true);
 }
 
-void Judge::end(Line& line) {
+void Judge::leave(Line& line) {
     if (line.stop) line.stop->store(true);
-    if (line.thread.joinable()) line.thread.join();
+    if (line.thread.joinable()) leaving_.push_back(std::move(line));
+    line = {};
+    sweep(false);
+}
+
+void Judge::sweep(bool wait) {
+    std::erase_if(leaving_, [wait](Line& line) {
+        if (!wait && !line.done->load()) return false;
+        line.thread.join();
+        return true;
+    });
 }
 
 void Judge::settle() {
@@ -51,11 +61,12 @@ void Judge::settle() {
 }
 
 void Judge::check(Setup setup, Rulebook book) {
-    end(check_);
-    auto stop = std::make_shared<std::atomic<bool>>(false);
+    leave(check_);
+    auto stop = std::make_shared<std::atomic<bool>>(false), done = std::make_shared<std::atomic<bool>>(false);
     check_.stop = stop;
+    check_.done = done;
     ++checking_;
-    check_.thread = std::thread([this, stop, setup = std::move(setup), book = std::move(book)]() mutable {
+    check_.thread = std::thread([this, stop, done, setup = std::move(setup), book = std::move(book)]() mutable {
         auto judgement = std::make_shared<Judgement>();
         QString trouble;
         try {
@@ -81,15 +92,17 @@ void Judge::check(Setup setup, Rulebook book) {
                 settle();
             },
             Qt::QueuedConnection);
+        done->store(true);
     });
 }
 
 void Judge::rank(Setup setup, Seat seat, std::vector<Lot> lots, Rulebook book, Prefer prefer) {
-    end(rank_);
-    auto stop = std::make_shared<std::atomic<bool>>(false);
+    leave(rank_);
+    auto stop = std::make_shared<std::atomic<bool>>(false), done = std::make_shared<std::atomic<bool>>(false);
     rank_.stop = stop;
+    rank_.done = done;
     ++ranking_;
-    rank_.thread = std::thread([this, stop, setup = std::move(setup), seat, lots = std::move(lots), book = std::move(book), prefer] {
+    rank_.thread = std::thread([this, stop, done, setup = std::move(setup), seat, lots = std::move(lots), book = std::move(book), prefer] {
         auto ranking = std::make_shared<Ranking>();
         QString trouble;
         ranking->seat = seat;
@@ -116,19 +129,20 @@ void Judge::rank(Setup setup, Seat seat, std::vector<Lot> lots, Rulebook book, P
                 --ranking_;
                 if (!stop->load()) {
                     if (trouble.isEmpty()) emit ranked(ranking);
-                    else emit failed(trouble);
+                    else emit rank_failed(trouble);
                 }
                 settle();
             },
             Qt::QueuedConnection);
+        done->store(true);
     });
 }
 
 void Judge::cancel() {
-    end(check_);
-    end(rank_);
+    leave(check_);
+    leave(rank_);
 }
 
-void Judge::cancel_rank() { end(rank_); }
+void Judge::cancel_rank() { leave(rank_); }
 
 }  // namespace binwright

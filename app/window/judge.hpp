@@ -7,6 +7,7 @@
 #include <map>
 #include <memory>
 #include <thread>
+#include <vector>
 
 #include "engine/answer/judge.hpp"
 
@@ -45,18 +46,21 @@ class Judge : public QObject {
   signals:
     void checked(std::shared_ptr<const Judgement> judgement);
     void ranked(std::shared_ptr<const Ranking> ranking);
-    void failed(const QString& text);
+    void failed(const QString& text);       ///< the check: nothing stands
+    void rank_failed(const QString& text);
     void progressed(double share);  ///< of the ranking
     void idle();
 
   private:
     struct Line {
         std::thread thread;
-        std::shared_ptr<std::atomic<bool>> stop;
+        std::shared_ptr<std::atomic<bool>> stop, done;
     };
     Line check_, rank_;
+    std::vector<Line> leaving_;  ///< told to stop, and not waited for: the window's thread goes on at once
     int checking_ = 0, ranking_ = 0;
-    void end(Line& line);
+    void leave(Line& line);
+    void sweep(bool wait);
     void settle();
 };
 

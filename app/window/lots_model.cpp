@@ -75,8 +75,14 @@ void IndexedModel::search(const QString& words) {
 void CandidateModel::show(std::shared_ptr<const Ranking> ranking) {
     beginResetModel();
     ranking_ = std::move(ranking);
+    instead_.clear();
     rebuild();
     endResetModel();
+}
+
+void CandidateModel::withhold(const QString& instead) {
+    instead_ = instead;
+    if (rowCount() > 0) emit dataChanged(index(0, 0), index(rowCount() - 1, count - 1));
 }
 
 int CandidateModel::source_count() const { return ranking_ ? static_cast<int>(ranking_->candidates.size()) : 0; }
@@ -105,6 +111,10 @@ QVariant CandidateModel::key_of(int row, int column) const {
 QVariant CandidateModel::data(const QModelIndex& index, int role) const {
     const Candidate* one = candidate(index);
     if (one == nullptr) return {};
+    if (withheld() && index.column() != lot && index.column() != part) {
+        if (role == Qt::DisplayRole && index.column() == verdict) return instead_;
+        return {};
+    }
     const Finding* finding = one->report.findings.empty() ? nullptr : &one->report.findings.front();
     if (role == Qt::DecorationRole && index.column() == verdict) return verdict_icon(one->report.verdict);
     if (role == Qt::ForegroundRole && index.column() == verdict) return verdict_colour(one->report.verdict, QApplication::palette());

@@ -40,6 +40,10 @@ class CandidateModel : public IndexedModel {
     using IndexedModel::IndexedModel;
     enum Column { lot, verdict, part, reason, headroom, count };
     void show(std::shared_ptr<const Ranking> ranking);
+    /// What is shown was judged for other values, or is being judged: no verdict stands. An empty text: they stand.
+    void withhold(const QString& instead);
+    [[nodiscard]] bool withheld() const { return !instead_.isEmpty(); }
+    [[nodiscard]] Seat seat() const { return ranking_ ? ranking_->seat : Seat::switch_; }
     [[nodiscard]] const Candidate* candidate(const QModelIndex& index) const;
     [[nodiscard]] int columnCount(const QModelIndex& = {}) const override { return count; }
     [[nodiscard]] QVariant data(const QModelIndex& index, int role) const override;
@@ -52,6 +56,7 @@ class CandidateModel : public IndexedModel {
 
   private:
     std::shared_ptr<const Ranking> ranking_;
+    QString instead_;
 };
 
 class BinModel : public IndexedModel {

@@ -66,6 +66,7 @@ MainWindow::MainWindow(const WindowStart& start, Ask& ask, bool settings) : ask_
     connect(sheet_, &SeatSheet::cancel_wanted, this, [this] {
         judge_.cancel_rank();
         sheet_->show_progress(1);
+        sheet_->withhold("not judged");
     });
     connect(sheet_, &SeatSheet::rank_wanted, this, &MainWindow::rank_again);
     connect(sheet_, &SeatSheet::fit_wanted, this, [this](const QString& label) { change_value(QString("seat.%1.fitted").arg(qt(to_string(seat_))), label); });
@@ -88,7 +89,17 @@ MainWindow::MainWindow(const WindowStart& start, Ask& ask, bool settings) : ask_
     connect(&judge_, &Judge::progressed, this, [this](double share) { sheet_->show_progress(std::min(share, 0.99)); });
     connect(&judge_, &Judge::failed, this, [this](const QString& text) {
         line_->say(text);
+        judgement_.reset();
+        strip_->set_judgement(nullptr);
+        sheet_->show_seat(document_.converter, seat_, nullptr, nullptr);
         sheet_->show_progress(1);
+        sheet_->withhold("not judged");
+        statusBar()->clearMessage();
+    });
+    connect(&judge_, &Judge::rank_failed, this, [this](const QString& text) {
+        complain(text);
+        sheet_->show_progress(1);
+        sheet_->withhold("not judged");
     });
 
     open_bin(start);
@@ -181,6 +192,7 @@ void MainWindow::judge_again() {
         strip_->set_stale(true);
         rank_due_ = true;
         judge_.cancel_rank();
+        sheet_->withhold("judging…");
         judge_.check(std::move(now), book());
         statusBar()->showMessage("judging…");
     } catch (const std::exception& error) {
@@ -191,6 +203,7 @@ void MainWindow::judge_again() {
 void MainWindow::rank_again() {
     try {
         judge_.rank(setup(), seat_, store_->engine_lots(), book(), Prefer::headroom);
+        sheet_->withhold("judging…");
         sheet_->show_progress(0);
     } catch (const std::exception& error) {
         complain(trouble_text(error));

@@ -48,6 +48,7 @@ OperatingLine::OperatingLine(QWidget* parent) : QWidget(parent) {
             edit->setObjectName(qt(about.key) + "_" + end);
             edit->setAccessibleName(end + " " + qt(about.meaning));
             edit->setMinimumWidth(edit->fontMetrics().horizontalAdvance("888.88 kHz"));
+            write_on_paper(*edit);
             edit->installEventFilter(this);
             connect(edit, &QLineEdit::editingFinished, this, [this, k] { entered(k); });
             return edit;

@@ -70,6 +70,7 @@ SeatSheet::SeatSheet(QWidget* parent) : QWidget(parent) {
     search_->setAccessibleName("Search the ranked lots");
     search_->setPlaceholderText("search the lots: label, part, verdict, origin");
     search_->setClearButtonEnabled(true);
+    write_on_paper(*search_);
     head->addWidget(search_, 1);
     progress_ = new QProgressBar(right_side);
     progress_->setObjectName("rank_progress");
@@ -101,10 +102,11 @@ SeatSheet::SeatSheet(QWidget* parent) : QWidget(parent) {
     table_->setTabKeyNavigation(false);
     table_->horizontalHeader()->setSectionsClickable(true);
     table_->horizontalHeader()->setSortIndicatorShown(true);
-    table_->horizontalHeader()->setStretchLastSection(true);
+    table_->horizontalHeader()->setSortIndicator(-1, Qt::AscendingOrder);  // as ranked, until a column is chosen
     const int unit = table_->fontMetrics().averageCharWidth();
-    for (const auto& [section, width] : {std::pair<int, int>{CandidateModel::lot, 9}, {CandidateModel::verdict, 14}, {CandidateModel::part, 34}, {CandidateModel::reason, 62}})
+    for (const auto& [section, width] : {std::pair<int, int>{CandidateModel::lot, 9}, {CandidateModel::verdict, 15}, {CandidateModel::part, 36}, {CandidateModel::headroom, 19}})
         table_->setColumnWidth(section, unit * width);
+    table_->horizontalHeader()->setSectionResizeMode(CandidateModel::reason, QHeaderView::Stretch);
     connect(table_->horizontalHeader(), &QHeaderView::sectionClicked, this, [this](int section) {
         auto* header = table_->horizontalHeader();
         model_->sort(section, header->sortIndicatorOrder());
@@ -154,13 +156,30 @@ void SeatSheet::show_seat(const Converter& converter, Seat seat, const Judgement
     if (now != nullptr && !now->part.empty()) title += ", " + (now->lot.empty() ? QString() : qt(now->lot) + "  ") + qt(now->part);
     title_->setText(title);
     rulers_->show_report(now != nullptr ? *now : SeatReport{}, report_in(kept));
-    fitted_->setHtml(now != nullptr ? findings_html(now->findings, palette()) : QString("<p>not judged yet</p>"));
+    // A mixed bank is several lots in one seat: the gravest on the rulers, every one in words.
+    QString html;
+    int lots = 0;
+    if (judgement != nullptr)
+        for (const SeatReport& report : judgement->report.seats) lots += report.seat == seat;
+    if (judgement != nullptr)
+        for (const SeatReport& report : judgement->report.seats) {
+            if (report.seat != seat) continue;
+            if (lots > 1) html += QString("<p style='margin:8px 0 0 0'><b>%1</b>&nbsp; %2</p>").arg(qt(report.lot), qt(report.part).toHtmlEscaped());
+            html += findings_html(report.findings, palette());
+        }
+    fitted_->setHtml(html.isEmpty() ? QString("<p>not judged yet</p>") : html);
+    if (model_->rowCount() > 0 && model_->seat() != seat) model_->show(nullptr);
 }
 
 void SeatSheet::show_ranking(std::shared_ptr<const Ranking> ranking) {
     model_->show(std::move(ranking));
     if (model_->rowCount() > 0) table_->selectRow(0);
     show_progress(1);
+}
+
+void SeatSheet::withhold(const QString& instead) {
+    model_->withhold(instead);
+    chosen();
 }
 
 void SeatSheet::show_progress(double share) {
@@ -173,7 +192,7 @@ void SeatSheet::show_progress(double share) {
 void SeatSheet::chosen() {
     const Candidate* one = model_->candidate(table_->currentIndex());
     fit_->setEnabled(one != nullptr);
-    if (one == nullptr) {
+    if (one == nullptr || model_->withheld()) {
         findings_->clear();
         return;
     }

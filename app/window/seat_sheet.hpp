@@ -21,6 +21,7 @@ class SeatSheet : public QWidget {
     void show_seat(const Converter& converter, Seat seat, const Judgement* judgement, const Judgement* kept);
     void show_ranking(std::shared_ptr<const Ranking> ranking);
     void show_progress(double share);  ///< of the ranking; ≥ 1: done
+    void withhold(const QString& instead);  ///< the verdicts on show no longer stand; `instead` takes their place
     [[nodiscard]] CandidateModel* model() { return model_; }
 
   signals:

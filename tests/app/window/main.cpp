@@ -23,7 +23,7 @@ CATCH_REGISTER_LISTENER(QtListener)
 
 namespace binwright {
 
-void on_dialog(const char* name, std::function<void(QDialog&)> act) {
+void on_dialog(const QString& name, std::function<void(QDialog&)> act) {
     auto* timer = new QTimer(qApp);
     timer->setInterval(20);
     QObject::connect(timer, &QTimer::timeout, qApp, [timer, name, act] {

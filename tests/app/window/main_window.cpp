@@ -200,6 +200,21 @@ TEST_CASE("pictures of the window in light and dark", "[app][window][pictures]")
         named<QTableView>(*demo.window, "bin_lots")->selectRow(5);
         QTest::qWait(50);
         CHECK(demo.window->grab().save(folder + "/bin-" + name + ".png"));
+        const auto photograph = [&](const QString& dialog) {
+            on_dialog(dialog, [&](QDialog& form) {
+                QTest::qWait(50);
+                CHECK(form.grab().save(folder + "/" + dialog + "-" + name + ".png"));
+                QTest::mouseClick(form.findChild<QPushButton*>("cancel"), Qt::LeftButton);
+            });
+        };
+        auto* page = named<BinPage>(*demo.window, "bin_page");
+        photograph("add_lot");
+        page->add();
+        photograph("measure_lot");
+        page->measure();
+        demo.answers.unsaved_answers = {Ask::Unsaved::discard};
+        photograph("new_form");
+        demo.window->new_converter();
     }
     QApplication::setPalette(light);
 }

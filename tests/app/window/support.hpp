@@ -109,6 +109,6 @@ struct DemoWindow {
 };
 
 /// Lets dialogs that the window runs be answered: `act` gets the open form once it is there.
-void on_dialog(const char* name, std::function<void(QDialog&)> act);
+void on_dialog(const QString& name, std::function<void(QDialog&)> act);
 
 }  // namespace binwright
