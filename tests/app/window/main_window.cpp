@@ -2,6 +2,7 @@
 #include <QAbstractItemModelTester>
 #include <QAccessible>
 #include <QDir>
+#include <QSettings>
 #include <QStyleFactory>
 
 #include "engine/words/words.hpp"
@@ -139,6 +140,63 @@ TEST_CASE("the bin page adds measures and takes back", "[app][window][bin]") {
     CHECK(page->model()->rowCount() == before);
     CHECK(demo.window->store().history().size() == 3);
     demo.settle();
+}
+
+TEST_CASE("what was open and chosen is there again after a restart", "[app][window]") {
+    QTemporaryDir settings;
+    QSettings::setDefaultFormat(QSettings::IniFormat);
+    QSettings::setPath(QSettings::IniFormat, QSettings::UserScope, settings.path());
+    const DemoWindow demo;  // only for its copy of the file
+    const std::string bin = settings.filePath("bin.sqlite").toStdString();
+    Answers answers;
+    {
+        MainWindow first(WindowStart{demo.path, bin, false}, answers);
+        first.resize(1111, 777);
+        first.show();
+        named<CircuitStrip>(first, "circuit_strip")->choose(Seat::rectifier);
+        CHECK(first.close());
+    }
+    MainWindow second(WindowStart{"", bin, false}, answers);
+    second.show();
+    CHECK(second.document().path == demo.path);
+    CHECK(named<QLabel>(second, "seat_title")->text().startsWith("D1: rectifier"));
+    CHECK(second.size() == QSize(1111, 777));
+    second.close();
+}
+
+TEST_CASE("a ranking that is cancelled leaves no verdict on show", "[app][window]") {
+    DemoWindow demo;
+    demo.settle();
+    named<CircuitStrip>(*demo.window, "circuit_strip")->choose(Seat::rectifier);
+    named<CircuitStrip>(*demo.window, "circuit_strip")->choose(Seat::output_capacitor);
+    auto* cancel = named<QPushButton>(*demo.window, "rank_cancel");
+    CHECK(cancel->text() == "&Cancel");
+    QTest::mouseClick(cancel, Qt::LeftButton);
+    CHECK(cancel->text() == "&Rank again");
+    demo.settle();
+    auto* lots = named<SeatSheet>(*demo.window, "seat_sheet")->model();
+    for (int row = 0; row < lots->rowCount(); ++row) CHECK(lots->index(row, CandidateModel::verdict).data().toString() == "not judged");
+    QTest::mouseClick(cancel, Qt::LeftButton);
+    demo.settle();
+    CHECK(demo.candidate("114-Z")->report.verdict == Verdict::holds);
+}
+
+TEST_CASE("Enter on a lot tries it in the seat and dropping the trial takes it out", "[app][window]") {
+    DemoWindow demo;
+    demo.settle();
+    auto* table = named<QTableView>(*demo.window, "ranked_lots");
+    auto* lots = named<SeatSheet>(*demo.window, "seat_sheet")->model();
+    lots->search("112-X");
+    table->selectRow(0);
+    QTest::keyClick(table, Qt::Key_Return);
+    demo.settle();
+    CHECK(named<QLabel>(*demo.window, "seat_title")->text().startsWith("C3: output capacitor, 112-X"));
+    CHECK(demo.window->judgement()->report.verdict == Verdict::rejected);  // 15 V across 16 V
+    QTest::mouseClick(named<QPushButton>(*demo.window, "drop"), Qt::LeftButton);
+    demo.settle();
+    CHECK(named<QLabel>(*demo.window, "seat_title")->text().startsWith("C3: output capacitor, 103-M"));
+    CHECK(demo.window->judgement()->report.verdict == Verdict::holds);
+    CHECK_FALSE(demo.window->document().unsaved());
 }
 
 TEST_CASE("the tables keep to the rules of models", "[app][window]") {
