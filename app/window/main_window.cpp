@@ -107,6 +107,7 @@ MainWindow::MainWindow(const WindowStart& start, Ask& ask, bool settings) : ask_
     if (settings_) {
         const QSettings state;
         restoreGeometry(state.value("window/geometry").toByteArray());
+        sheet_->arrange(state.value("window/sheet").toByteArray());
         if (path.isEmpty()) path = state.value("window/file").toString();
         if (const auto seat = find_seat(state.value("window/seat", "output_capacitor").toString().toStdString())) seat_ = *seat;
     }
@@ -202,7 +203,7 @@ void MainWindow::judge_again() {
 
 void MainWindow::rank_again() {
     try {
-        judge_.rank(setup(), seat_, store_->engine_lots(), book(), Prefer::headroom);
+        judge_.rank(setup(), seat_, store_->engine_lots(), book(), sheet_->prefer());
         sheet_->withhold("judging…");
         sheet_->show_progress(0);
     } catch (const std::exception& error) {
@@ -329,6 +330,7 @@ void MainWindow::closeEvent(QCloseEvent* event) {
     if (settings_) {
         QSettings state;
         state.setValue("window/geometry", saveGeometry());
+        state.setValue("window/sheet", sheet_->arrangement());
         state.setValue("window/file", QString::fromStdString(document_.path));
         state.setValue("window/seat", qt(to_string(seat_)));
     }

@@ -2,6 +2,7 @@
 #include "app/window/seat_sheet.hpp"
 
 #include <QHeaderView>
+#include <QDataStream>
 #include <QHBoxLayout>
 #include <QScrollArea>
 #include <QSplitter>
@@ -11,6 +12,12 @@
 #include "engine/words/words.hpp"
 
 namespace binwright {
+
+namespace {
+
+constexpr Prefer kPreferences[] = {Prefer::headroom, Prefer::cool, Prefer::life, Prefer::thrift};
+
+}  // namespace
 
 QString findings_html(const std::vector<Finding>& findings, const QPalette& palette) {
     QString html;
@@ -72,6 +79,13 @@ SeatSheet::SeatSheet(QWidget* parent) : QWidget(parent) {
     search_->setClearButtonEnabled(true);
     write_on_paper(*search_);
     head->addWidget(search_, 1);
+    head->addWidget(new QLabel("prefer", right_side));
+    prefer_ = new QComboBox(right_side);
+    prefer_->setObjectName("prefer");
+    prefer_->setAccessibleName("What to prefer among lots that hold");
+    for (const Prefer one : kPreferences) prefer_->addItem(qt(to_string(one)));
+    connect(prefer_, &QComboBox::currentIndexChanged, this, [this] { emit rank_wanted(); });
+    head->addWidget(prefer_);
     progress_ = new QProgressBar(right_side);
     progress_->setObjectName("rank_progress");
     progress_->setAccessibleName("How much of the bin has been judged");
@@ -125,6 +139,7 @@ SeatSheet::SeatSheet(QWidget* parent) : QWidget(parent) {
     split->setStretchFactor(0, 2);
     split->setStretchFactor(1, 5);
     column->addWidget(split, 1);
+    splitters_ = {split, left_side, stack};
 
     connect(search_, &QLineEdit::textChanged, model_, &CandidateModel::search);
     connect(cancel_, &QPushButton::clicked, this, [this] {
@@ -175,6 +190,26 @@ void SeatSheet::show_ranking(std::shared_ptr<const Ranking> ranking) {
     model_->show(std::move(ranking));
     if (model_->rowCount() > 0) table_->selectRow(0);
     show_progress(1);
+}
+
+Prefer SeatSheet::prefer() const {
+    return find_prefer(prefer_->currentText().toStdString()).value_or(Prefer::headroom);
+}
+
+QByteArray SeatSheet::arrangement() const {
+    QByteArray all;
+    QDataStream out(&all, QIODevice::WriteOnly);
+    for (const QSplitter* splitter : splitters_) out << splitter->saveState();
+    return all;
+}
+
+void SeatSheet::arrange(const QByteArray& saved) {
+    QDataStream in(saved);
+    for (QSplitter* splitter : splitters_) {
+        QByteArray one;
+        in >> one;
+        if (!one.isEmpty()) splitter->restoreState(one);
+    }
 }
 
 void SeatSheet::withhold(const QString& instead) {
