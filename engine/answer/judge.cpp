@@ -134,6 +134,7 @@ std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, co
             part.highest_ambient = converter.operating.ambient.highest;
             for (const OperatingInfo& one : kOperating) part.top.set(one.quantity, converter.operating.get(one.quantity).highest);
             part.life_required = converter.operating.life;
+            part.ripple_allowed = converter.operating.output_ripple;
             if (converter.drive.voltage) {
                 part.drive_lowest = converter.drive.voltage->lowest;
                 part.drive_highest = converter.drive.voltage->highest;

@@ -125,6 +125,8 @@ Rating rating_of(const Rule& rule, const JudgedPart& part, const PartExposure& s
     Rating rating;
     if (rule.requirement == "life") {
         rating.printed = part.life_required;
+    } else if (rule.requirement == "output ripple") {
+        rating.printed = part.ripple_allowed;
     } else if (rule.requirement == "R_DS(on) gate voltage") {
         rating = gate_requirement(part);
     } else if (rule.rating) {
@@ -464,6 +466,7 @@ SeatReport judge_part(const JudgedPart& part, const Rulebook& book) {
                                 std::none_of(part.worst.missing.begin(), part.worst.missing.end(), [&](const auto& one) { return one.first == rule->stress; });
             if (absent && stress_row(rule->stress).only_where_it_occurs) continue;
             if (rule->requirement == "life" && !part.life_required) continue;  // nothing is required
+            if (rule->requirement == "output ripple" && !part.ripple_allowed) continue;
             double scale = 1;
             Finding finding = judge_rule(*rule, part, scale);
             allow_for_unknown_kind(finding, part, book);

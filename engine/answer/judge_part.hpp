@@ -31,7 +31,8 @@ struct JudgedPart {
     bool runaway_best = false, runaway_worst = false;  ///< somewhere in the range no stable temperature exists
     double lowest_ambient = 298.15, highest_ambient = 298.15;  ///< [K]
     At top{};                             ///< the upper ends of the operating range (for what may be lowered)
-    std::optional<double> life_required;  ///< [s]
+    std::optional<double> life_required;    ///< [s]
+    std::optional<double> ripple_allowed;   ///< at the output, peak to peak [V]
     std::optional<double> drive_lowest, drive_highest;  ///< gate drive [V]
     std::string today;                    ///< ISO 8601; empty: measurements do not expire
     std::optional<SinkShare> sink;

@@ -86,8 +86,9 @@ void add_drive(std::vector<Remedy>& out, const Finding& finding, const JudgedPar
 }
 
 void add_parallel(std::vector<Remedy>& out, const Finding& finding, const JudgedPart& part) {
-    if (finding.rule.stress != Stress::ripple_current || !(*finding.limit > 0)) return;
-    const double count = std::ceil(part.count * finding.stress->value / *finding.limit - 1e-9);
+    const bool ripple = finding.rule.stress == Stress::output_ripple;  // ESR and 1/C fall as the number grows, a little slower with others beside them
+    if ((finding.rule.stress != Stress::ripple_current && !ripple) || !(*finding.limit > 0)) return;
+    const double count = std::ceil((ripple ? 1.02 : 1) * part.count * finding.stress->value / *finding.limit - 1e-9);
     if (!(count > part.count) || count > 20) return;
     Remedy more = remedy(Do::parallel, "count", Unit::none);
     more.at_least = count;

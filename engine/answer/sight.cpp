@@ -194,6 +194,7 @@ Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Ope
             if (key.seat == Seat::switch_) return {{"switch current", state.switch_.current_peak * sharing}};
             return {{"per leg", state.rectifier.current_peak * leg_share(bench)}};
         case Stress::ripple_current: return {{"ripple", ripple_of_one(bench, key, operated)}};
+        case Stress::output_ripple: return {{"peak to peak", state.output_ripple}};
         case Stress::power: {
             Terms terms;
             for (const Loss& loss : operated.losses)
@@ -305,6 +306,7 @@ Sight sight_of(const Bench& bench) {
                 see(seat, entry, Stress::voltage_peak_single);
                 see(seat, entry, Stress::voltage_reverse);
                 if (!part) continue;
+                if (seat == Seat::output_capacitor && converter.operating.output_ripple) see(seat, entry, Stress::output_ripple);
                 const CapacitorModel& model = bench.models.banks.at(seat)[entry].model;
                 if (!model.capacitance) {
                     lacks(seat, entry, Stress::ripple_current, "C");
@@ -357,6 +359,7 @@ StressValue explain(const Bench& bench, const StressKey& key, const At& at, cons
             take(bench.assumptions);
             break;
         case Stress::ripple_current:
+        case Stress::output_ripple:
         case Stress::hot_spot_temperature:
         case Stress::life:
             if (const CapacitorModel* model = capacitor_at(bench, key)) {

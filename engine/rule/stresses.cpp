@@ -31,6 +31,7 @@ constexpr StressRow kRows[] = {
     {{Stress::current_rms, "current_rms", "RMS current", Unit::ampere}, yes, yes, no, no, {}, no},
     {{Stress::current_peak, "current_peak", "peak current", Unit::ampere}, yes, yes, no, no, {}, no},
     {{Stress::ripple_current, "ripple_current", "ripple current", Unit::ampere}, no, no, yes, no, kCapacitor, no},
+    {{Stress::output_ripple, "output_ripple", "output ripple", Unit::volt}, no, no, yes, no, kCapacitor, yes},
     {{Stress::power, "power", "loss", Unit::watt}, yes, yes, yes, no, kSwitchLoss, no},
     {{Stress::junction_temperature, "junction_temperature", "junction temperature", Unit::celsius}, yes, yes, no, no, kHeat, no},
     {{Stress::hot_spot_temperature, "hot_spot_temperature", "hot spot", Unit::celsius}, no, no, yes, no, kWarm, no},
@@ -50,6 +51,7 @@ const std::vector<StressInfo>& infos() {
 
 constexpr RequirementInfo kRequirements[] = {
     {"life", "the life required", Stress::life},
+    {"output ripple", "the ripple allowed", Stress::output_ripple},
     {"R_DS(on) gate voltage", "the gate voltage at which R_DS(on) is guaranteed", Stress::drive_voltage_lowest},
 };
 

@@ -36,6 +36,7 @@ constexpr Phrase kPhrases[] = {
     {Stress::gate_voltage, "{} at", "gate"},                 {Stress::drive_voltage_lowest, "{} at the gate at the lowest", ""},
     {Stress::current_average, "{} mean through", "leg"},     {Stress::current_rms, "{} RMS through", "part"},
     {Stress::current_peak, "{} peak through", "part"},       {Stress::ripple_current, "{} ripple through", "part"},
+    {Stress::output_ripple, "{} of output ripple, peak to peak", ""},
     {Stress::power, "{} lost in", "part"},                   {Stress::junction_temperature, "junction at {} in", "part"},
     {Stress::hot_spot_temperature, "hot spot at {} in", "part"}, {Stress::runaway_gain, "leakage heat gain {}", ""},
     {Stress::life, "life {}", ""},                           {Stress::regulation, "{} of the operating range is reached", ""},
@@ -89,6 +90,7 @@ std::string tail(const Finding& finding, const Shown& shown) {
     switch (finding.rule.stress) {
         case Stress::drive_voltage_lowest: return "; R_DS(on) is guaranteed from " + limit + ": " + left;
         case Stress::life: return "; " + limit + " are required: " + left;
+        case Stress::output_ripple: return "; " + limit + (finding.rule.requirement.empty() ? " is the rule: " : " is allowed: ") + left;
         case Stress::runaway_gain:
             return (finding.stress->value >= 1 ? ": it runs away" : "") + std::string("; the rule allows ") + limit + ": " + left;
         case Stress::regulation: return *finding.left < 0 ? "; all of it is wanted" : "";

@@ -46,6 +46,7 @@ inline JudgedPart judged(Lot lot, std::vector<StressValue> stresses) {
     part.lowest_ambient = kCelsiusZero + 25;
     part.highest_ambient = kCelsiusZero + 45;
     part.life_required = 20000 * 3600.0;
+    part.ripple_allowed = 0.15;
     part.drive_lowest = 11;
     part.drive_highest = 12;
     part.top = kAt;
