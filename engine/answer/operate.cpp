@@ -28,9 +28,10 @@ CoreModel core_of(const WindingConfig& config, const Converter& converter) {
     CoreModel core;
     core.loss = config.core_loss;
     const auto& winding = converter.winding;
-    const bool shared = has_secondary(*converter.topology) &&
-                        (converter.topology->transformer || winding.leakage || (winding.coupling && winding.coupling->highest > 0));
-    if (shared) return core;
+    // A transformer's core sees the magnetising current of its primary; what two coupled chokes do to one core is not told apart.
+    const bool shared = has_secondary(*converter.topology) && !converter.topology->transformer &&
+                        (winding.leakage || (winding.coupling && winding.coupling->highest > 0));
+    if (shared || !(config.inductance > 0)) return core;
     core.inductance = config.inductance > 0 ? std::optional(config.inductance) : std::nullopt;
     core.turns = config.turns;
     core.area = config.core_area;
@@ -246,11 +247,12 @@ Operated operate(const Bench& bench, const At& at, Solver& solver, double nothin
         const double extra_rectifier = heat.stable || bench.heated.empty() ? rectifier_loss_now.reverse : 0;
         const auto core = [&](const WindingConfig& config, const WindingStress& stress, double inductance) {
             CoreModel model = core_of(config, setup.converter);
-            model.inductance = inductance;
+            if (model.inductance) model.inductance = inductance;
             return core_loss(model, {std::max(0.0, stress.current_peak - stress.current_min), at.frequency}).value_or(0);
         };
-        const double core_first = core(first, state.primary, circuit.primary.inductance);
-        const double core_second = second != nullptr ? core(*second, state.secondary, circuit.secondary.inductance) : 0;
+        const bool transformer = circuit.topology->transformer;
+        const double core_first = core(first, transformer ? state.magnetising : state.primary, circuit.primary.inductance);
+        const double core_second = second != nullptr && !transformer ? core(*second, state.secondary, circuit.secondary.inductance) : 0;
         const double extras[] = {extra_switch, extra_rectifier, core_first, core_second};
         const double currents[] = {state.switch_.current_rms, state.rectifier.current_rms, state.primary.current_rms, state.secondary.current_rms};
         const double peaks[] = {state.switch_.current_peak, state.rectifier.current_peak, state.primary.current_peak, state.secondary.current_peak};

@@ -5,6 +5,7 @@
 #include <QSettings>
 #include <QStyleFactory>
 
+#include "app/window/ink.hpp"
 #include "engine/words/words.hpp"
 #include "tests/app/window/support.hpp"
 
@@ -225,6 +226,29 @@ TEST_CASE("everything that takes the keyboard has a name for a reader", "[app][w
         REQUIRE(spoken != nullptr);
         const bool inner = qobject_cast<QTabBar*>(widget) || widget->inherits("QTabWidget") || widget->inherits("QHeaderView") || widget->inherits("QSplitter");
         CHECK((inner || !spoken->text(QAccessible::Name).isEmpty()));
+    }
+}
+
+TEST_CASE("every topology is drawn with a tag at each of its seats", "[app][window]") {
+    QTemporaryDir folder;
+    const QByteArray wanted = qgetenv("BINWRIGHT_SCREENSHOTS");
+    Answers answers;
+    for (const Topology& topology : topologies()) {
+        INFO(topology.name);
+        const std::string path = folder.filePath("one.toml").toStdString();
+        NewConverter asked{"drawn", {10, 15}, {12, 12}, {0.1, 1}, 100e3};
+        if (topology.name == "buck") asked.output_voltage = {5, 5};
+        if (topology.name == "boost") asked.output_voltage = {24, 24};
+        std::ofstream(path) << new_converter_text(topology, asked);
+        MainWindow window(WindowStart{path, "", true}, answers, false);
+        window.resize(1280, 720);
+        window.show();
+        REQUIRE(QTest::qWaitFor([&] { return !window.busy(); }, 120000));
+        REQUIRE(window.judgement() != nullptr);
+        auto* strip = named<CircuitStrip>(window, "circuit_strip");
+        for (const Branch& branch : topology.branches)
+            if (branch.seat) CHECK(strip->accessibleDescription().contains(qt(window.document().converter.reference(*branch.seat))));
+        if (!wanted.isEmpty()) CHECK(strip->grab().save(QString::fromLocal8Bit(wanted) + "/drawn-" + qt(topology.name) + ".png"));
     }
 }
 
