@@ -5,6 +5,7 @@
 #include <string>
 #include <vector>
 
+#include "engine/answer/connect.hpp"
 #include "engine/answer/exposure.hpp"
 #include "engine/answer/models.hpp"
 #include "engine/heat/heat.hpp"
@@ -22,6 +23,7 @@ struct Bench {
     bool drives_plateau = true;           ///< false: the drive does not lift the gate above its plateau, overlap cannot be computed
     HeatLayout layout;                    ///< seats: those of `heated`, ambient of the point
     std::vector<Seat> heated;             ///< switch, rectifier: whose junction temperature can be computed
+    std::optional<Connected> connected;   ///< the input connected hot
     std::vector<std::string> assumptions, not_included;
     std::vector<std::pair<Seat, std::string>> no_heat;  ///< seats without a junction temperature, and what is missing
 };

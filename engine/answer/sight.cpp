@@ -13,6 +13,8 @@ namespace {
 
 using Terms = std::vector<Term>;
 
+constexpr double kNoSurge = 1e-3;  ///< a rectifier that carries less when the input is connected carries nothing [A]
+
 double sum(const Terms& terms) {
     double total = 0;
     for (const Term& term : terms) total += term.value;
@@ -61,6 +63,40 @@ double ripple_of_one(const Bench& bench, const StressKey& key, const Operated& o
 double surge_of(const Bench& bench) {
     const auto& source = bench.setup->converter.source;
     return source && source->surge ? *source->surge : 0.0;
+}
+
+const Extreme* connected_capacitor(const Connected& connected, Seat seat) {
+    if (seat == Seat::input_capacitor) return &connected.peaks.input;
+    return seat == Seat::coupling_capacitor ? &connected.peaks.coupling : &connected.peaks.output;
+}
+
+/// What the hot connection does to a part, where it does more than the converter at work.
+std::optional<Terms> connection_terms(const Bench& bench, const StressKey& key, double at_work) {
+    if (!bench.connected || !bench.connected->not_computed.empty()) return std::nullopt;
+    const ConnectionPeaks& peaks = bench.connected->peaks;
+    double value = 0;
+    switch (key.stress) {
+        case Stress::voltage_peak_single:
+            if (key.seat == Seat::switch_) value = peaks.switch_voltage.highest;
+            else if (key.seat == Seat::rectifier) value = peaks.reverse_voltage;
+            else {
+                const Extreme* of = connected_capacitor(*bench.connected, key.seat);
+                value = std::max(of->highest, -of->lowest);
+            }
+            break;
+        case Stress::voltage_reverse: value = -connected_capacitor(*bench.connected, key.seat)->lowest; break;
+        case Stress::current_surge: {
+            const double legs = bench.models.rectifier ? bench.models.rectifier->legs : 1;
+            value = peaks.rectifier_current * (legs > 1 ? (1 + bench.allowances.sharing) / legs : 1.0);
+            break;
+        }
+        default: return std::nullopt;
+    }
+    if (!(value > at_work)) return std::nullopt;
+    if (key.stress != Stress::voltage_peak_single) return Terms{{"hot connection", value}};
+    const double in = bench.connected->input_voltage;
+    if (value < in) return Terms{{"hot connection", value}};
+    return Terms{{"input", in}, {"ring of the hot connection", value - in}};
 }
 
 /// Whether the input reaches the output through windings and rectifier alone: then a surge passes, whatever the switch does.
@@ -174,11 +210,24 @@ Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Ope
                           : key.seat == Seat::rectifier ? rectifier_voltage_terms(bench, at, operated, true, rests_on)
                                                         : capacitor_voltage_terms(key.seat, at, operated);
             if (key.seat != Seat::switch_ && key.seat != Seat::rectifier) add_surge(terms, bench, at, operated);
-            if (!converter.source || converter.source->switched) rests_on.push_back("hot connection not computed");
+            if (const auto scene = connection_terms(bench, key, sum(terms))) {
+                rests_on = bench.connected->rests_on;
+                return *scene;
+            }
             return terms;
         }
         case Stress::voltage_average: return {{"mean", bank_state(state, key.seat).voltage_average}};
-        case Stress::voltage_reverse: return {{"reverse", std::max(0.0, -bank_state(state, key.seat).voltage_min)}};
+        case Stress::voltage_reverse: {
+            const double at_work = std::max(0.0, -bank_state(state, key.seat).voltage_min);
+            if (const auto scene = connection_terms(bench, key, at_work)) {
+                rests_on = bench.connected->rests_on;
+                return *scene;
+            }
+            return {{"reverse", at_work}};
+        }
+        case Stress::current_surge:
+            rests_on = bench.connected->rests_on;
+            return connection_terms(bench, key, 0).value_or(Terms{{"hot connection", 0}});
         case Stress::gate_voltage: return {{"drive", converter.drive.voltage->highest}};
         case Stress::drive_voltage_lowest:
             return {{"lowest drive", converter.drive.voltage->lowest},
@@ -248,7 +297,7 @@ Sight sight_of(const Bench& bench) {
             if (seat == Seat::switch_) {
                 const bool held = converter.seat(seat).overshoot || converter.clamp.voltage;
                 for (const Stress stress : {Stress::voltage_peak_repetitive, Stress::voltage_peak_single}) {
-                    if (stress == Stress::voltage_peak_single && !(surge_of(bench) > 0)) continue;
+                    if (stress == Stress::voltage_peak_single && !(surge_of(bench) > 0) && !bench.connected) continue;
                     if (converter.topology->transformer && !held) lacks(seat, entry, stress, "a measured overshoot, or [clamp]");
                     else see(seat, entry, stress);
                 }
@@ -287,8 +336,9 @@ Sight sight_of(const Bench& bench) {
                 }
             } else if (seat == Seat::rectifier) {
                 see(seat, entry, Stress::voltage_peak_repetitive);
-                if (surge_of(bench) > 0) see(seat, entry, Stress::voltage_peak_single);
+                if (surge_of(bench) > 0 || bench.connected) see(seat, entry, Stress::voltage_peak_single);
                 if (!part) continue;
+                if (bench.connected && bench.connected->peaks.rectifier_current > kNoSurge) see(seat, entry, Stress::current_surge);
                 see(seat, entry, Stress::current_average);
                 see(seat, entry, Stress::current_peak);
                 const RectifierModel& model = *bench.models.rectifier;
@@ -326,6 +376,9 @@ Sight sight_of(const Bench& bench) {
             }
         }
     }
+    if (bench.connected && !bench.connected->not_computed.empty())
+        for (const StressKey& key : sight.keys)
+            if (key.stress == Stress::voltage_peak_single) lacks(key.seat, key.entry, key.stress, "the hot connection (" + bench.connected->not_computed + ")");
     return sight;
 }
 
@@ -346,6 +399,11 @@ StressValue explain(const Bench& bench, const StressKey& key, const At& at, cons
     value.at = at;
     value.made_of = terms_of(bench, key, at, operated, value.rests_on);
     std::erase_if(value.made_of, [&](const Term& term) { return term.value == 0 && value.made_of.size() > 1; });
+    const bool once = std::any_of(value.made_of.begin(), value.made_of.end(), [](const Term& term) { return term.name.ends_with("hot connection"); });
+    if (once) {
+        value.at = At{};
+        value.at.input_voltage = bench.connected->input_voltage;
+    }
     value.value = sum(value.made_of);
     const auto take = [&](const std::vector<std::string>& from) {
         value.rests_on.insert(value.rests_on.end(), from.begin(), from.end());

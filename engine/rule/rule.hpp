@@ -15,7 +15,7 @@ namespace binwright {
 enum class Stress {
     voltage_average, voltage_peak_repetitive, voltage_peak_single, voltage_reverse,
     gate_voltage, drive_voltage_lowest,
-    current_average, current_rms, current_peak, ripple_current,
+    current_average, current_rms, current_peak, current_surge, ripple_current,
     output_ripple,  ///< peak to peak at the output's terminals
     power, junction_temperature, hot_spot_temperature, runaway_gain, life,
     regulation,  ///< of the converter: 1 where every point of the operating range is reached, else the share that is

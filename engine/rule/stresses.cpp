@@ -30,6 +30,7 @@ constexpr StressRow kRows[] = {
     {{Stress::current_average, "current_average", "average current", Unit::ampere}, yes, yes, no, no, {}, no},
     {{Stress::current_rms, "current_rms", "RMS current", Unit::ampere}, yes, yes, no, no, {}, no},
     {{Stress::current_peak, "current_peak", "peak current", Unit::ampere}, yes, yes, no, no, {}, no},
+    {{Stress::current_surge, "current_surge", "surge current", Unit::ampere}, no, yes, no, no, {}, yes},
     {{Stress::ripple_current, "ripple_current", "ripple current", Unit::ampere}, no, no, yes, no, kCapacitor, no},
     {{Stress::output_ripple, "output_ripple", "output ripple", Unit::volt}, no, no, yes, no, kCapacitor, yes},
     {{Stress::power, "power", "loss", Unit::watt}, yes, yes, yes, no, kSwitchLoss, no},

@@ -36,6 +36,7 @@ constexpr Phrase kPhrases[] = {
     {Stress::gate_voltage, "{} at", "gate"},                 {Stress::drive_voltage_lowest, "{} at the gate at the lowest", ""},
     {Stress::current_average, "{} mean through", "leg"},     {Stress::current_rms, "{} RMS through", "part"},
     {Stress::current_peak, "{} peak through", "part"},       {Stress::ripple_current, "{} ripple through", "part"},
+    {Stress::current_surge, "a surge of {} through", "part"},
     {Stress::output_ripple, "{} of output ripple, peak to peak", ""},
     {Stress::power, "{} lost in", "part"},                   {Stress::junction_temperature, "junction at {} in", "part"},
     {Stress::hot_spot_temperature, "hot spot at {} in", "part"}, {Stress::runaway_gain, "leakage heat gain {}", ""},
@@ -161,6 +162,7 @@ std::string because_of(const Finding& finding) {
     const bool heat = warm(finding) || finding.rule.stress == Stress::runaway_gain || finding.rule.stress == Stress::life ||
                       finding.rule.stress == Stress::power || finding.rule.stress == Stress::regulation;
     if (!(stress.at.input_voltage > 0)) return sum;
+    if (!(stress.at.frequency > 0)) return sum.empty() ? "when " + format_quantity(stress.at.input_voltage, Unit::volt) + " are connected hot" : sum;
     std::vector<std::string> at;
     if (!input) at.push_back("input " + format_quantity(stress.at.input_voltage, Unit::volt));
     if (!output) at.push_back("output " + format_quantity(stress.at.output_voltage, Unit::volt));

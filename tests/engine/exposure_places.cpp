@@ -47,8 +47,36 @@ TEST_CASE("a surge reaches switch and rectifier wherever the input does", "[engi
     const Exposure boost = expose(setup_of(supply_text("boost"), surge), End::worst, {});
     CHECK(single(boost, Seat::output_capacitor)->value >= 39.9);
     CHECK(single(boost, Seat::switch_)->value >= 40);
-    // Without a surge there is no such event in switch and rectifier.
-    CHECK(single(expose(setup_of(supply_text("boost")), End::worst, {}), Seat::switch_) == nullptr);
+    // Without a surge, and never connected hot, there is no such event in switch and rectifier.
+    CHECK(single(expose(setup_of(supply_text("boost"), {"source.switched=false"}), End::worst, {}), Seat::switch_) == nullptr);
+}
+
+TEST_CASE("the hot connection decides where it does more than the converter at work", "[engine][exposure]") {
+    // A lead of 1 µH and 30 mΩ on 10 µF without ESR to speak of rings 15 V to V·(1 + exp(−πζ/√(1 − ζ²))) = 27.9 V
+    // (series resonant circuit); at work the same capacitor sees 15 V and some ripple.
+    std::string text = supply_text("buck");
+    const std::string aluminium = "[seat.input_capacitor]\nfitted = \"aluminium\"\n";
+    text.replace(text.find(aluminium), aluminium.size(), "[seat.input_capacitor.element]\ncapacitance = \"10 µF\"\nresistance = \"0.1 mΩ\"\n");
+    const Exposure hot = expose(setup_of(text), End::worst, {});
+    const StressValue* seen = single(hot, Seat::input_capacitor);
+    REQUIRE(seen != nullptr);
+    CHECK(seen->value == Approx(27.9).epsilon(0.005));
+    CHECK(seen->made_of.front().name == "input");
+    CHECK(seen->made_of.back().name == "ring of the hot connection");
+    CHECK(single(hot, Seat::switch_)->value >= seen->value - 0.01);  // open, it stands between that and nothing
+    const Exposure cold = expose(setup_of(text, {"source.switched=false"}), End::worst, {});
+    CHECK(single(cold, Seat::input_capacitor)->value < 16);
+    // No [source]: a lead is assumed, and the answer says so.
+    std::string bare = text;
+    bare.erase(bare.find("[source]"), bare.find("[winding]") - bare.find("[source]"));
+    const Exposure assumed = expose(setup_of(bare), End::worst, {});
+    REQUIRE_FALSE(single(assumed, Seat::input_capacitor)->rests_on.empty());
+    CHECK(single(assumed, Seat::input_capacitor)->rests_on.front() == "connected hot through 30 mΩ and 1 µH: the file gives no source");
+    // A boost's output is filled through its rectifier, which carries the surge.
+    const Exposure boost = expose(setup_of(supply_text("boost")), End::worst, {});
+    const StressValue* surge = boost.seats.at(Seat::rectifier).front().find(Stress::current_surge);
+    REQUIRE(surge != nullptr);
+    CHECK(surge->value > 15);
 }
 
 TEST_CASE("a loss whose figure is missing leaves the junction temperature unproven", "[engine][exposure]") {
