@@ -212,6 +212,14 @@ Json json_of(const Finding& finding) {
     out["text"] = wording.line;
     if (!wording.because.empty()) out["because"] = wording.because;
     out["rule_text"] = wording.rule;
+    if (finding.ground == Ground::rule && by_rule) {
+        out["source"] = finding.rule.source;
+        if (!finding.rule.clause.empty()) out["clause"] = finding.rule.clause;
+        out["known"] = finding.rule.known;
+        if (!finding.rule.reading.empty()) out["reading"] = finding.rule.reading;
+        if (!finding.goes_before.empty()) out["goes_before"] = finding.goes_before;
+        if (!finding.binds_before.empty()) out["binds_before"] = finding.binds_before;
+    }
     if (!wording.settle.empty()) out["settle"] = wording.settle;
     out["remedies"] = Json::array();
     for (const Remedy& remedy : finding.remedies) out["remedies"].push_back(json_of(remedy));

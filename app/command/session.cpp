@@ -5,6 +5,7 @@
 #include <sys/stat.h>
 #include <unistd.h>
 
+#include <algorithm>
 #include <cerrno>
 #include <cstdlib>
 #include <cstring>
@@ -12,6 +13,7 @@
 #include <fstream>
 #include <iostream>
 #include <iterator>
+#include <memory>
 #include <nlohmann/json.hpp>
 
 #include "app/command/text.hpp"
@@ -165,7 +167,9 @@ OpenBin bin_for_reading(Session& session, const ConverterText* converter) {
 Rulebook rulebook_for(Session& session) {
     if (!session.rulebook) return rulebooks().front();
     if (const Rulebook* shipped = find_rulebook(*session.rulebook)) return *shipped;
-    if (*session.rulebook != "-" && !exists(*session.rulebook)) {
+    const std::size_t colon = session.rulebook->rfind(':');
+    const std::string path = session.rulebook->substr(0, exists(*session.rulebook) ? std::string::npos : colon);
+    if (path != "-" && !exists(path)) {
         std::vector<std::string> names;
         for (const Rulebook& book : rulebooks()) names.push_back(book.name);
         const std::string near = nearest_word(*session.rulebook, names);
@@ -173,7 +177,29 @@ Rulebook rulebook_for(Session& session) {
                                                (near.empty() ? "; see `binwright rulebook list`" : "; did you mean \"" + near + "\"?"),
                          "the name of a shipped rulebook or the path of a file");
     }
-    return read_rulebook(read_text(session, *session.rulebook), *session.rulebook);
+    return rulebook_from(session, *session.rulebook);
+}
+
+Rulebook rulebook_from(Session& session, const std::string& named) {
+    const std::size_t colon = exists(named) ? std::string::npos : named.rfind(':');
+    const std::string path = named.substr(0, colon), level = colon == std::string::npos ? "" : named.substr(colon + 1);
+    // Books below it: shipped ones by name, else files beside it; each is kept until the one above is read.
+    std::vector<std::unique_ptr<Rulebook>> below;
+    std::vector<std::string> open = {path};
+    FindBook find = [&](const std::string& name) -> const Rulebook* {
+        if (const Rulebook* shipped = find_rulebook(name)) return shipped;
+        const std::string beside = (fs::path(path).parent_path() / name).string();
+        for (const std::string& file : {beside, beside + ".toml"}) {
+            std::error_code failed;
+            if (!fs::is_regular_file(file, failed)) continue;
+            if (std::find(open.begin(), open.end(), file) != open.end()) throw call_error(file, "based_on", "the rulebook is based on itself", "another rulebook");
+            open.push_back(file);
+            below.push_back(std::make_unique<Rulebook>(read_rulebook(read_text(session, file), file, {}, find)));
+            return below.back().get();
+        }
+        return nullptr;
+    };
+    return read_rulebook(read_text(session, path), path, level, find);
 }
 
 namespace {

@@ -59,7 +59,10 @@ struct ConverterText {
 /// A bin in memory with the starter part types, and the demo's lots where wanted.
 [[nodiscard]] OpenBin bin_in_memory(bool demo);
 
+/// --rulebook: a shipped one by name, with or without its level, or a file; else house.
 [[nodiscard]] Rulebook rulebook_for(Session& session);
+/// A rulebook file ("mine.toml", "mine.toml:II", "-") with what it is based on: shipped ones by name, or files beside it.
+[[nodiscard]] Rulebook rulebook_from(Session& session, const std::string& path);
 
 /// A converter read with --with, and its fitted parts found in its bin.
 struct Job {

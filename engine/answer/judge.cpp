@@ -5,9 +5,11 @@
 #include <map>
 #include <memory>
 
+#include "engine/answer/beside.hpp"
 #include "engine/answer/judge_setup.hpp"
 #include "engine/answer/models.hpp"
 #include "engine/answer/sight.hpp"
+#include "engine/answer/surroundings.hpp"
 
 namespace binwright {
 namespace {
@@ -128,6 +130,8 @@ std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, co
             part.count = fitted->second[entry].count;
             part.best = of(ends.best, seat, entry);
             part.worst = of(ends.worst, seat, entry);
+            for (StressValue& value : surroundings(setup, ends.best, seat)) part.best.stresses.push_back(std::move(value));
+            for (StressValue& value : surroundings(setup, ends.worst, seat)) part.worst.stresses.push_back(std::move(value));
             part.runaway_best = ends.best.runaway;
             part.runaway_worst = ends.worst.runaway;
             part.lowest_ambient = converter.operating.ambient.lowest;
@@ -167,15 +171,37 @@ std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, co
     return out;
 }
 
+std::vector<SeatReport> judge_beside(const Setup& setup, const BothEnds& ends, const Rulebook& book) {
+    std::vector<SeatReport> out;
+    const std::vector<Beside> all = beside_of(setup.converter);
+    for (std::size_t k = 0; k < all.size(); ++k) {
+        JudgedPart part;
+        part.reference = all[k].name;
+        part.lot.part = all[k].part;
+        part.best = ends.best.beside[k];
+        part.worst = ends.worst.beside[k];
+        part.lowest_ambient = setup.converter.operating.ambient.lowest;
+        part.highest_ambient = setup.converter.operating.ambient.highest;
+        part.voltages_only = all[k].what == Beside::What::across;
+        out.push_back(judge_part(part, book));
+        if (!part.voltages_only) continue;
+        out.back().part.clear();  // its name is said already
+        for (Finding& finding : out.back().findings) finding.part.clear();
+    }
+    return out;
+}
+
 CheckReport check(const Setup& setup, const Rulebook& book, const Progress& progress) {
     CheckReport report;
     const Progress first = progress ? Progress([&progress](double done) { return progress(0.9 * done); }) : Progress();
     BothEnds ends = expose_both(setup, book.allowances, first);
     report.seats = judge_setup(setup, ends, book, {std::begin(kSeats), std::end(kSeats)}, true, progress);
+    report.beside = judge_beside(setup, ends, book);
     report.converter = judge_converter(ends.best.converter, ends.worst.converter, book);
     report.exposure = std::move(ends.worst);
     report.verdict = Verdict::holds;
     for (const SeatReport& seat : report.seats) report.verdict = graver(report.verdict, seat.verdict);
+    for (const SeatReport& one : report.beside) report.verdict = graver(report.verdict, one.verdict);
     for (const Finding& finding : report.converter) report.verdict = graver(report.verdict, finding.verdict);
     return report;
 }

@@ -54,8 +54,8 @@ struct Finding {
     std::string reference;      ///< "C12"
     std::string lot;            ///< label; empty for typed figures or a bare element
     std::string part;           ///< name of the type
-    std::string book;           ///< rulebook name
-    Rule rule;
+    std::string book;           ///< rulebook that the rule stands in (of one based on another: the one it comes from)
+    Rule rule;                  ///< of several bounds with the one that binds here as its own
     Verdict verdict = Verdict::unproven;
     std::optional<StressValue> stress;  ///< at the end that decides the verdict (worst; best when rejected outright)
     std::optional<double> rating, limit;
@@ -68,6 +68,8 @@ struct Finding {
     std::optional<double> printed;      ///< the rating as printed, where `rating` is what is left of it here (case, cold, frequency)
     std::vector<std::string> rests_on;
     std::vector<Remedy> remedies;
+    std::vector<std::string> goes_before;   ///< ids of the more general rules that this one stands in for
+    std::vector<std::string> binds_before;  ///< ids of the other rules on this stress, of which this is the tightest
 };
 
 struct SeatReport {
@@ -80,6 +82,7 @@ struct SeatReport {
 struct CheckReport {
     Verdict verdict = Verdict::unproven;
     std::vector<SeatReport> seats;
+    std::vector<SeatReport> beside;    ///< fuse, cores, sense resistor, what sits across a voltage; `seat` means nothing there
     std::vector<Finding> converter;    ///< regulation
     Exposure exposure;                 ///< at the worst end
 };

@@ -10,6 +10,7 @@
 #include <tuple>
 
 #include "engine/answer/models.hpp"
+#include "engine/answer/rating.hpp"
 #include "engine/loss/figures.hpp"
 #include "engine/rule/stresses.hpp"
 
@@ -17,137 +18,14 @@ namespace binwright {
 namespace {
 
 constexpr double kInfinite = std::numeric_limits<double>::infinity();
-constexpr double kCold = kCelsiusZero + 25;  // V_DSS is printed at 25 °C, and falls 0.1 %/K below it (data-sheet experience)
-constexpr double kColdSlope = 1e-3;          // [1/K]
 
 bool upper(const Rule& rule) { return rule.bound != BoundKind::at_least; }
 
 bool celsius(const Rule& rule) { return info(rule.stress).unit == Unit::celsius; }
 
-/// A rating as it counts here: what is printed, and what is left of it.
-struct Rating {
-    std::optional<double> printed;
-    double scale = 1;               ///< left of it here, ≤ or ≥ 1
-    std::string missing;            ///< the figure without which it is not known
-    std::vector<std::string> rests_on;
-    std::vector<Figure> told;
-    bool unsure = false;            ///< only an upper bound of the rating is known
-    [[nodiscard]] std::optional<double> here() const { return printed ? std::optional(*printed * scale) : std::nullopt; }
-};
-
-/// The tightest of a part's figures for a rating, per leg.
-const Figure* tightest(const Part& part, Symbol symbol, End end, double& value) {
-    const Figure* found = nullptr;
-    for (const Figure& figure : part.figures) {
-        if (figure.symbol != symbol) continue;
-        const double one = at_end(figure.value, end) / (figure.both_legs ? 2 : 1);
-        if (found == nullptr || one < value) {
-            found = &figure;
-            value = one;
-        }
-    }
-    return found;
-}
-
-void take_printed(Rating& rating, const Part& part, Symbol symbol, End end) {
-    double value = 0;
-    if (const Figure* figure = tightest(part, symbol, end, value)) {
-        rating.printed = value;
-        if (figure->known == Known::told) rating.told.push_back(*figure);
-    } else {
-        rating.missing = info(symbol).name;
-    }
-}
-
-/// I_D at the case temperature of the part: the current that heats the junction to T_jmax falls with √(T_jmax − T_case).
-Rating drain_current(const JudgedPart& part, const PartExposure& seen, End end) {
-    Rating rating;
-    double top = 0;
-    const Figure* highest = tightest(part.lot.part, Symbol::T_jmax, end, top);
-    const StressValue* junction = seen.find(Stress::junction_temperature);
-    const StressValue* power = seen.find(Stress::power);
-    const auto own = end_value(part.lot.part, Symbol::R_thjc, End::best);  // the least drop makes the warmest case
-    std::optional<double> at_case;
-    if (junction && std::isfinite(junction->value))
-        at_case = junction->value - (power && own ? power->value / std::max(1, part.count) * *own : 0.0);
-    for (const Figure* figure : figures_of(part.lot.part, Symbol::I_D)) {
-        const double printed = at_end(figure->value, end), printed_at = temperature_of(*figure, kCold);
-        double scale = 1;
-        bool unsure = false;
-        if (highest && at_case && *at_case > printed_at && top > printed_at)
-            scale = std::sqrt(std::max(0.0, (top - *at_case) / (top - printed_at)));
-        else if (!highest || !at_case)
-            unsure = true;
-        if (rating.printed && *rating.here() <= printed * scale) continue;
-        rating = Rating{};
-        rating.printed = printed;
-        rating.scale = scale;
-        rating.unsure = unsure;
-        if (unsure) rating.missing = highest ? "the case temperature" : "T_jmax";
-        if (scale < 1)
-            rating.rests_on.push_back(fmt::format("I_D of {} at {} counted as {} at a case of {}", format_quantity(printed, Unit::ampere),
-                                                  format_quantity(printed_at, Unit::celsius), format_quantity(printed * scale, Unit::ampere),
-                                                  format_quantity(*at_case, Unit::celsius)));
-        if (figure->known == Known::told) rating.told.push_back(*figure);
-    }
-    if (!rating.printed) rating.missing = "I_D";
-    return rating;
-}
-
-Rating ripple_rating(const JudgedPart& part, const StressValue* stress, End end) {
-    Rating rating;
-    take_printed(rating, part.lot.part, Symbol::I_ripple, end);
-    if (!rating.printed) return rating;
-    const double frequency = stress && stress->at.frequency > 0 ? stress->at.frequency : part.top.frequency;
-    if (!(frequency > 0)) return rating;
-    const CapacitorModel model = capacitor_model(part.lot.part, frequency, end);
-    if (model.ripple && *rating.printed > 0) rating.scale = *model.ripple / *rating.printed;
-    return rating;
-}
-
-Rating gate_requirement(const JudgedPart& part) {
-    Rating rating;
-    for (const Figure* figure : figures_of(part.lot.part, Symbol::R_DSon)) {
-        const double volts = figure->at.voltage.value_or(*info(Symbol::R_DSon).usual.voltage);
-        if (rating.printed && *rating.printed <= volts) continue;
-        rating.printed = volts;
-        rating.told.clear();
-        rating.rests_on.clear();
-        if (!figure->at.voltage)
-            rating.rests_on.push_back(fmt::format("R_DS(on) without a gate voltage counted as at {}", format_quantity(volts, Unit::volt)));
-        if (figure->known == Known::told) rating.told.push_back(*figure);
-    }
-    if (!rating.printed) rating.missing = "R_DS(on)";
-    return rating;
-}
-
-Rating rating_of(const Rule& rule, const JudgedPart& part, const PartExposure& seen, const StressValue* stress, End end) {
-    Rating rating;
-    if (rule.requirement == "life") {
-        rating.printed = part.life_required;
-    } else if (rule.requirement == "output ripple") {
-        rating.printed = part.ripple_allowed;
-    } else if (rule.requirement == "R_DS(on) gate voltage") {
-        rating = gate_requirement(part);
-    } else if (rule.rating) {
-        switch (*rule.rating) {
-            case Symbol::I_D: return drain_current(part, seen, end);
-            case Symbol::I_ripple: return ripple_rating(part, stress, end);
-            default: take_printed(rating, part.lot.part, *rule.rating, end);
-        }
-        if (rule.rating == Symbol::V_DSS && rating.printed && part.lowest_ambient < kCold) {
-            rating.scale = 1 - kColdSlope * (kCold - part.lowest_ambient);
-            rating.rests_on.push_back(fmt::format("V_DSS counted as {} at {}", format_quantity(*rating.here(), Unit::volt),
-                                                  format_quantity(part.lowest_ambient, Unit::celsius)));
-        }
-    }
-    return rating;
-}
-
-bool needs_reference(const Rule& rule) { return rule.rating || !rule.requirement.empty(); }
-
 /// Figures on which the stress rests: those told, and the first that is not on record at all.
 void look_at_figures(Finding& finding, const JudgedPart& part) {
+    if (part.voltages_only) return;  // what the circuit puts there does not depend on it
     const auto resting = stress_row(finding.rule.stress).rests_on;
     for (const Symbol symbol : resting)
         for (const Figure* figure : figures_of(part.lot.part, symbol))
@@ -175,6 +53,12 @@ void fill_numbers(Finding& finding, double stress, std::optional<double> rating,
     }
 }
 
+std::string with_article_of(const std::string& selector) {
+    const auto slash = selector.find('/');
+    const std::string family = selector.substr(0, slash), words = slash == std::string::npos ? family : selector.substr(slash + 1) + " " + family;
+    return (std::string_view("aeiou").find(words.front()) != std::string_view::npos ? "an " : "a ") + words;
+}
+
 void append(std::vector<std::string>& to, const std::vector<std::string>& from) {
     for (const std::string& one : from)
         if (std::find(to.begin(), to.end(), one) == to.end()) to.push_back(one);
@@ -194,9 +78,9 @@ std::optional<bool> holds_with(const Rule& rule, JudgedPart part, Symbol symbol,
     part.lot.part.figures.push_back(figure);
     const StressValue* stress = seen->find(rule.stress);
     if (!stress) return std::nullopt;
-    const Rating rating = rating_of(rule, part, *seen, stress, End::worst);
-    if (needs_reference(rule) && !rating.here()) return std::nullopt;
-    return !breaks(rule, stress->value, limit_of(rule, rating.here().value_or(0)));
+    const Held held = held_to(rule, part, *seen, stress, End::worst);
+    if (!held.limit) return std::nullopt;
+    return held.beyond.empty() && !breaks(held.rule, stress->value, *held.limit);
 }
 
 struct SearchRange {
@@ -271,17 +155,37 @@ void find_bound(Finding& finding, const JudgedPart& part) {
     }
 }
 
-Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
+/// A rule that needs no stress: such a part is not permitted, or the rulebook says nothing of it.
+Finding flat_finding(const Rule& rule, const Part& part) {
     Finding finding;
     finding.rule = rule;
+    const bool banned = rule.bound == BoundKind::not_permitted;
+    finding.verdict = banned ? Verdict::rejected : Verdict::not_covered;
+    const std::string who = with_article_of(selector(part));
+    const std::string subject = rule.of_part ? "" : std::string(info(rule.stress).meaning) + " of ";
+    finding.why = banned ? "the rulebook does not permit " + who + " here" : "the rulebook says nothing of " + (subject.empty() ? who : "the " + subject + who);
+    if (banned) {
+        Remedy other;
+        other.action = Do::swap;
+        other.figure = "technology";
+        finding.remedies.push_back(other);
+    }
+    return finding;
+}
+
+Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
+    if (rule.bound == BoundKind::not_permitted || rule.bound == BoundKind::not_covered) return flat_finding(rule, part.lot.part);
+    Finding finding;
     const StressValue* worst = part.worst.find(rule.stress);
     const StressValue* best = part.best.find(rule.stress);
     if (worst && std::isnan(worst->value)) worst = nullptr;
     if (best && std::isnan(best->value)) best = nullptr;
     if (!best) best = worst;
     if (!worst) worst = best;
-    const Rating at_worst = rating_of(rule, part, part.worst, worst, End::worst);
-    const Rating at_best = rating_of(rule, part, part.best, best, End::best);
+    const Held held_worst = held_to(rule, part, part.worst, worst, End::worst);
+    const Held held_best = held_to(rule, part, part.best, best, End::best);
+    const Rating& at_worst = held_worst.rating;
+    finding.rule = held_worst.rule;
     scale = at_worst.scale;
 
     std::string missing;
@@ -300,20 +204,21 @@ Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
     if (heat && part.runaway_worst) hardest = kInfinite;
     if (heat && part.runaway_best) mildest = kInfinite;
     const bool have_stress = worst || (heat && part.runaway_worst);
-    const bool have_limits = !needs_reference(rule) || (at_worst.here() && at_best.here());
-    const double limit_worst = have_limits ? limit_of(rule, at_worst.here().value_or(0)) : 0;
-    const double limit_best = have_limits ? limit_of(rule, at_best.here().value_or(0)) : 0;
+    const bool have_limits = held_worst.limit && held_best.limit;
+    const double limit_worst = have_limits ? *held_worst.limit : 0, limit_best = have_limits ? *held_best.limit : 0;
 
     const bool decidable = have_stress && have_limits;
-    const bool holds = decidable && !breaks(rule, hardest, limit_worst);
-    const bool broken = decidable && breaks(rule, mildest, limit_best);
+    const bool holds = decidable && !breaks(rule, hardest, limit_worst) && held_worst.beyond.empty();
+    const bool broken = (decidable && breaks(rule, mildest, limit_best)) || !held_best.beyond.empty();
     finding.verdict = !finding.told.empty()                 ? Verdict::unproven
                       : broken                              ? Verdict::rejected
                       : holds && finding.missing.empty()    ? Verdict::holds
                                                             : Verdict::unproven;
     const bool show_best = broken && worst && best->value == mildest;
     if (worst) finding.stress = show_best ? *best : (best->value == hardest && worst->value != hardest ? *best : *worst);
-    const Rating& shown = show_best ? at_best : at_worst;
+    const Held& held = show_best ? held_best : held_worst;
+    const Rating& shown = held.rating;
+    finding.rule = held.rule;
     if (worst) append(finding.rests_on, finding.stress->rests_on);
     append(finding.rests_on, shown.rests_on);
     if (shown.printed && shown.scale != 1) finding.printed = shown.printed;
@@ -321,9 +226,10 @@ Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
         finding.why = "no stable temperature exists: leakage and heat drive each other up";
         finding.stress.reset();
         finding.limit = limit_worst;
+    } else if (!held.beyond.empty()) {
+        finding.why = held.beyond;
     } else if (worst) {
-        fill_numbers(finding, finding.stress->value, shown.here(), have_limits ? std::optional(show_best ? limit_best : limit_worst) : std::nullopt,
-                     part.highest_ambient);
+        fill_numbers(finding, finding.stress->value, shown.here(), have_limits ? held.limit : std::nullopt, part.highest_ambient);
     }
     // Where a rating cannot be told at all, what it would have to be is still worth saying.
     if (finding.verdict != Verdict::holds && !(finding.verdict == Verdict::rejected && !finding.missing.empty())) {
@@ -335,6 +241,38 @@ Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
     }
     if (finding.verdict == Verdict::rejected) finding.missing.clear();
     return finding;
+}
+
+/// A rule whose own condition rests on a figure that is not on record rejects nothing; one on a told figure decides nothing.
+void allow_for_condition(Finding& finding, const Applied& applied, const Part& part) {
+    for (const Condition& condition : applied.rule->where)
+        if (condition.figure)
+            for (const Figure* figure : figures_of(part, *condition.figure))
+                if (figure->known == Known::told && std::none_of(finding.told.begin(), finding.told.end(), [&](const Figure& one) { return one.symbol == figure->symbol; }))
+                    finding.told.push_back(*figure);
+    const bool decided = finding.verdict == Verdict::rejected || finding.verdict == Verdict::holds;
+    if (!finding.told.empty() && decided) finding.verdict = Verdict::unproven;
+    if (!applied.unknown.empty() && finding.verdict == Verdict::rejected) {
+        finding.verdict = Verdict::unproven;
+        finding.missing = applied.unknown;
+    }
+}
+
+/// Of several rules on one stress the tightest binds; the others are named beside it.
+void name_others(std::vector<Finding>& findings) {
+    for (Finding& one : findings) {
+        if (one.ground != Ground::rule || !one.limit) continue;
+        bool tightest = true;
+        std::vector<std::string> others;
+        for (const Finding& other : findings) {
+            if (&other == &one || other.ground != Ground::rule || !other.limit || other.rule.stress != one.rule.stress || upper(other.rule) != upper(one.rule)) continue;
+            const bool tighter = upper(one.rule) ? *other.limit < *one.limit : *other.limit > *one.limit;
+            tightest = tightest && !tighter && !(*other.limit == *one.limit && other.rule.id < one.rule.id);
+            others.push_back(other.rule.id);
+        }
+        std::sort(others.begin(), others.end());
+        if (tightest) one.binds_before = std::move(others);
+    }
 }
 
 /// A capacitor or rectifier whose kind is not on record is held to its family's own rule, and rejected only where every
@@ -352,6 +290,14 @@ void allow_for_unknown_kind(Finding& finding, const JudgedPart& part, const Rule
             return;
         }
     }
+}
+
+/// Of the path that charges a capacitor [Ω/V].
+std::optional<double> ohms_per_volt(const JudgedPart& part) {
+    const StressValue* path = part.worst.find(Stress::series_resistance);
+    const StressValue* volts = part.worst.find(Stress::voltage_peak_repetitive);
+    if (!path || !volts || !(volts->value > 0)) return std::nullopt;
+    return path->value / volts->value;
 }
 
 std::string expired_figures(const JudgedPart& part, const Allowances& allowances) {
@@ -403,6 +349,8 @@ double limit_of(const Rule& rule, double rating) {
         case BoundKind::absolute: return rule.value;
         case BoundKind::below: return rating - rule.value;
         case BoundKind::at_least: return needs_reference(rule) ? rule.value * rating : rule.value;
+        case BoundKind::not_permitted:
+        case BoundKind::not_covered: break;
     }
     return 0;
 }
@@ -460,22 +408,29 @@ SeatReport judge_part(const JudgedPart& part, const Rulebook& book) {
         report.findings.push_back(ground_finding(Ground::not_covered, why));
     } else {
         int judged = 0;
-        for (const Rule* rule : rules_for(book, part.lot.part)) {
+        const std::optional<double> path = ohms_per_volt(part);
+        for (const Applied& applied : applied_rules(book, part.lot.part, path)) {
+            const Rule* rule = applied.rule;
+            const bool flat = rule->bound == BoundKind::not_permitted || rule->bound == BoundKind::not_covered;
             ++judged;
+            if (part.voltages_only && rule->stress != Stress::voltage_peak_repetitive && rule->stress != Stress::voltage_peak_single) continue;
             const bool absent = !part.worst.find(rule->stress) &&
                                 std::none_of(part.worst.missing.begin(), part.worst.missing.end(), [&](const auto& one) { return one.first == rule->stress; });
-            if (absent && stress_row(rule->stress).only_where_it_occurs) continue;
+            if (!flat && absent && stress_row(rule->stress).only_where_it_occurs) continue;
             if (rule->requirement == "life" && !part.life_required) continue;  // nothing is required
             if (rule->requirement == "output ripple" && !part.ripple_allowed) continue;
             double scale = 1;
             Finding finding = judge_rule(*rule, part, scale);
             allow_for_unknown_kind(finding, part, book);
+            allow_for_condition(finding, applied, part.lot.part);
+            for (const Rule* general : applied.before) finding.goes_before.push_back(general->id);
             if (finding.verdict == Verdict::rejected || finding.verdict == Verdict::unproven) {
                 const auto more = remedies_for(finding, part, scale);
                 finding.remedies.insert(finding.remedies.end(), more.begin(), more.end());
             }
             report.findings.push_back(std::move(finding));
         }
+        name_others(report.findings);
         if (judged == 0)
             report.findings.push_back(ground_finding(Ground::no_rule, "the rulebook has no rule for a " + selector(part.lot.part)));
         if (part.lot.suspect)
@@ -497,7 +452,7 @@ SeatReport judge_part(const JudgedPart& part, const Rulebook& book) {
         finding.reference = part.reference;
         finding.lot = part.lot.label;
         finding.part = part.lot.part.name;
-        finding.book = book.name;
+        finding.book = finding.rule.book.empty() ? book.name : finding.rule.book;
         report.verdict = graver(report.verdict, finding.verdict);
     }
     if (report.findings.empty()) report.verdict = Verdict::not_covered;

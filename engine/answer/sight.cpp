@@ -195,8 +195,49 @@ double leg_share(const Bench& bench) {
     return legs > 1 ? (1 + bench.allowances.sharing) / legs : 1.0;
 }
 
+constexpr std::size_t kNoEntry = static_cast<std::size_t>(-1);
+
+Terms beside_terms(const Bench& bench, const StressKey& key, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+    const Beside& one = bench.beside[static_cast<std::size_t>(key.beside)];
+    const SteadyState& state = operated.state;
+    switch (one.what) {
+        case Beside::What::fuse:
+            if (key.stress == Stress::current_average) return {{"input current", state.input_current_average}};
+            rests_on = bench.connected->rests_on;
+            return {{"hot connection", bench.connected->peaks.source_charge_squared}};
+        case Beside::What::first_core: return {{"winding current", state.primary.current_peak}};
+        case Beside::What::second_core: return {{"winding current", std::max(state.secondary.current_peak, -state.secondary.current_min)}};
+        case Beside::What::common_core: return {{"both windings' current", state.core_current_peak}};
+        case Beside::What::sense: {
+            double loss = 0;
+            for (const Loss& part : operated.losses)
+                if (part.name == "sense resistor") loss += part.power;
+            return {{"loss", loss}};
+        }
+        case Beside::What::across: break;
+    }
+    const bool single = key.stress == Stress::voltage_peak_single;
+    if (one.between == "switch" || one.between == "rectifier") {
+        const Seat seat = one.between == "switch" ? Seat::switch_ : Seat::rectifier;
+        Terms terms = seat == Seat::switch_ ? switch_voltage_terms(bench, at, operated, single, rests_on) : rectifier_voltage_terms(bench, at, operated, single, rests_on);
+        if (single)
+            if (const auto scene = connection_terms(bench, {seat, 0, key.stress}, sum(terms))) return *scene;
+        return terms;
+    }
+    const Seat seat = one.between == "input" ? Seat::input_capacitor : one.between == "coupling" ? Seat::coupling_capacitor : Seat::output_capacitor;
+    Terms terms = capacitor_voltage_terms(seat, at, operated);
+    if (!single) return terms;
+    add_surge(terms, bench, at, operated);
+    if (const auto scene = connection_terms(bench, {seat, 0, key.stress}, sum(terms))) {
+        rests_on = bench.connected->rests_on;
+        return *scene;
+    }
+    return terms;
+}
+
 /// The terms of any stress; the value is their sum.
 Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
+    if (key.beside >= 0) return beside_terms(bench, key, at, operated, rests_on);
     const SteadyState& state = operated.state;
     const Converter& converter = bench.setup->converter;
     const double sharing = key.seat == Seat::switch_ && bench.models.switch_count > 1 ? (1 + bench.allowances.sharing) / bench.models.switch_count : 1;
@@ -243,6 +284,7 @@ Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Ope
             if (key.seat == Seat::switch_) return {{"switch current", state.switch_.current_peak * sharing}};
             return {{"per leg", state.rectifier.current_peak * leg_share(bench)}};
         case Stress::ripple_current: return {{"ripple", ripple_of_one(bench, key, operated)}};
+        case Stress::surge_integral: break;  // of a fuse alone
         case Stress::output_ripple: return {{"peak to peak", state.output_ripple}};
         case Stress::power: {
             Terms terms;
@@ -268,6 +310,8 @@ Terms terms_of(const Bench& bench, const StressKey& key, const At& at, const Ope
             return {{"life", capacitor_life(*capacitor_at(bench, key), operated.air + converter.seat(key.seat).warmer_by + rise.value_or(0)).value_or(NAN)}};
         }
         case Stress::regulation: return {{"reached", state.reached ? 1.0 : 0.0}};
+        case Stress::air_temperature:
+        case Stress::series_resistance: break;  // of the place, not of the work: surroundings.hpp
     }
     return {};
 }
@@ -376,9 +420,16 @@ Sight sight_of(const Bench& bench) {
             }
         }
     }
+    for (std::size_t k = 0; k < bench.beside.size(); ++k)
+        for (const Stress stress : stresses_of(bench.beside[k])) {
+            const bool once = stress == Stress::surge_integral;
+            if (once && (!bench.connected || !bench.connected->not_computed.empty())) continue;
+            const bool coupling = bench.beside[k].between == "coupling" && !has_seat(*converter.topology, Seat::coupling_capacitor);
+            if (!coupling) sight.keys.push_back({Seat::switch_, kNoEntry, stress, static_cast<int>(k)});
+        }
     if (bench.connected && !bench.connected->not_computed.empty())
         for (const StressKey& key : sight.keys)
-            if (key.stress == Stress::voltage_peak_single) lacks(key.seat, key.entry, key.stress, "the hot connection (" + bench.connected->not_computed + ")");
+            if (key.stress == Stress::voltage_peak_single && key.beside < 0) lacks(key.seat, key.entry, key.stress, "the hot connection (" + bench.connected->not_computed + ")");
     return sight;
 }
 
@@ -408,6 +459,7 @@ StressValue explain(const Bench& bench, const StressKey& key, const At& at, cons
     const auto take = [&](const std::vector<std::string>& from) {
         value.rests_on.insert(value.rests_on.end(), from.begin(), from.end());
     };
+    if (key.beside >= 0) return value;
     switch (key.stress) {
         case Stress::power:
         case Stress::junction_temperature:

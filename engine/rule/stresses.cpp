@@ -18,6 +18,8 @@ constexpr Symbol kCapacitor[] = {Symbol::ESR, Symbol::tan_delta, Symbol::C};
 constexpr Symbol kWarm[] = {Symbol::ESR, Symbol::tan_delta, Symbol::C, Symbol::I_ripple};
 constexpr Symbol kLife[] = {Symbol::ESR, Symbol::tan_delta, Symbol::C, Symbol::I_ripple, Symbol::life, Symbol::T_max};
 
+constexpr Family kFuse[] = {Family::fuse}, kChoke[] = {Family::choke}, kResistor[] = {Family::resistor};
+
 constexpr bool yes = true, no = false;
 constexpr StressRow kRows[] = {
     // stress, name, meaning, unit; switch, rectifier, capacitor, converter; rests on; only where it occurs
@@ -27,17 +29,20 @@ constexpr StressRow kRows[] = {
     {{Stress::voltage_reverse, "voltage_reverse", "voltage in reverse", Unit::volt}, no, no, yes, no, {}, yes},
     {{Stress::gate_voltage, "gate_voltage", "gate voltage", Unit::volt}, yes, no, no, no, {}, no},
     {{Stress::drive_voltage_lowest, "drive_voltage_lowest", "lowest drive voltage", Unit::volt}, yes, no, no, no, kGate, no},
-    {{Stress::current_average, "current_average", "average current", Unit::ampere}, yes, yes, no, no, {}, no},
+    {{Stress::current_average, "current_average", "average current", Unit::ampere}, yes, yes, no, no, {}, no, kFuse},
     {{Stress::current_rms, "current_rms", "RMS current", Unit::ampere}, yes, yes, no, no, {}, no},
-    {{Stress::current_peak, "current_peak", "peak current", Unit::ampere}, yes, yes, no, no, {}, no},
+    {{Stress::current_peak, "current_peak", "peak current", Unit::ampere}, yes, yes, no, no, {}, no, kChoke},
+    {{Stress::surge_integral, "surge_integral", "I²t of the hot connection", Unit::ampere2_second}, no, no, no, no, {}, yes, kFuse},
     {{Stress::current_surge, "current_surge", "surge current", Unit::ampere}, no, yes, no, no, {}, yes},
     {{Stress::ripple_current, "ripple_current", "ripple current", Unit::ampere}, no, no, yes, no, kCapacitor, no},
     {{Stress::output_ripple, "output_ripple", "output ripple", Unit::volt}, no, no, yes, no, kCapacitor, yes},
-    {{Stress::power, "power", "loss", Unit::watt}, yes, yes, yes, no, kSwitchLoss, no},
+    {{Stress::power, "power", "loss", Unit::watt}, yes, yes, yes, no, kSwitchLoss, no, kResistor},
     {{Stress::junction_temperature, "junction_temperature", "junction temperature", Unit::celsius}, yes, yes, no, no, kHeat, no},
     {{Stress::hot_spot_temperature, "hot_spot_temperature", "hot spot", Unit::celsius}, no, no, yes, no, kWarm, no},
     {{Stress::runaway_gain, "runaway_gain", "heat gain of the leakage", Unit::none}, no, yes, no, no, kRunaway, no},
     {{Stress::life, "life", "life", Unit::second}, no, no, yes, no, kLife, no},
+    {{Stress::air_temperature, "air_temperature", "air temperature", Unit::celsius}, no, no, yes, no, {}, no},
+    {{Stress::series_resistance, "series_resistance", "resistance of the charging path", Unit::ohm}, no, no, yes, no, {}, no},
     {{Stress::regulation, "regulation", "share of the operating range that is reached", Unit::fraction}, no, no, no, yes, {}, no},
 };
 
@@ -53,6 +58,7 @@ const std::vector<StressInfo>& infos() {
 constexpr RequirementInfo kRequirements[] = {
     {"life", "the life required", Stress::life},
     {"output ripple", "the ripple allowed", Stress::output_ripple},
+    {"voltage applied", "the voltage applied", Stress::series_resistance},
     {"R_DS(on) gate voltage", "the gate voltage at which R_DS(on) is guaranteed", Stress::drive_voltage_lowest},
 };
 
@@ -89,8 +95,13 @@ std::string id_stem(const Rule& rule) {
 }
 
 bool selects(std::string_view selector, std::string_view part_selector) {
-    return selector == part_selector ||
-           (part_selector.size() > selector.size() && part_selector.starts_with(selector) && part_selector[selector.size()] == '/');
+    for (std::size_t from = 0; from <= selector.size();) {
+        const std::size_t end = std::min(selector.find(", ", from), selector.size());
+        const std::string_view one = selector.substr(from, end - from);
+        if (one == part_selector || (part_selector.size() > one.size() && part_selector.starts_with(one) && part_selector[one.size()] == '/')) return true;
+        from = end + 2;
+    }
+    return false;
 }
 
 }  // namespace binwright

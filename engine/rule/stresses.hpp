@@ -14,6 +14,7 @@ struct StressRow {
     std::span<const Symbol> rests_on;
     /// Where a part does not list it, it does not occur there (nothing reverses it, no surge is given).
     bool only_where_it_occurs;
+    std::span<const Family> beside = {};  ///< families beside the three that have it too
 };
 [[nodiscard]] std::span<const StressRow> stress_rows();
 [[nodiscard]] const StressRow& stress_row(Stress stress);
@@ -30,7 +31,17 @@ struct RequirementInfo {
 /// "voltage". Rules of one stem on one stress stand in for each other; the most specific selector wins.
 [[nodiscard]] std::string id_stem(const Rule& rule);
 
-/// Whether a selector ("capacitor", "capacitor/aluminium", "converter") takes a part of `part_selector`.
+/// Whether a selector ("capacitor", "capacitor/aluminium", "converter"; several with ", " between) takes a part of `part_selector`.
 [[nodiscard]] bool selects(std::string_view selector, std::string_view part_selector);
+
+/// Reads an expression of a family's figures; `unit` is what it must come out in (temperatures in it are differences).
+/// @throws InputError with place.column within `text`
+[[nodiscard]] Expression parse_expression(std::string_view text, Family family, Unit unit);
+/// The least (or greatest) value of an expression over both ends of its figures, each the tightest of its symbol; empty where
+/// one of them is not on record, and then `missing` names it. NaN where it divides by zero.
+[[nodiscard]] std::optional<double> value_of(const Expression& expression, const Part& part, bool least, std::string& missing);
+
+/// Whether a condition is true of a part: 1, 0, or -1 where that cannot be told.
+[[nodiscard]] int truth(const Condition& condition, const Part& part);
 
 }  // namespace binwright

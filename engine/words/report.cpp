@@ -42,6 +42,7 @@ std::string block(const Finding& finding) {
     add("because", wording.because);
     add("rests on", wording.rests_on);
     add("rule", wording.rule);
+    add("which is", wording.beside);
     add("to mend", wording.mend);
     add("to settle", wording.settle);
     return out;
@@ -55,7 +56,11 @@ std::string line(const SeatReport& report) {
 std::string summary(const CheckReport& report, const Converter& converter) {
     std::vector<std::string> rejected;
     std::size_t unproven = 0, not_covered = 0, hold = 0, broken = 0;
-    for (const SeatReport& seat : report.seats) {
+    std::vector<const SeatReport*> all;
+    for (const SeatReport& seat : report.seats) all.push_back(&seat);
+    for (const SeatReport& one : report.beside) all.push_back(&one);
+    for (const SeatReport* one : all) {
+        const SeatReport& seat = *one;
         switch (seat.verdict) {
             case Verdict::rejected: ++broken; if (std::find(rejected.begin(), rejected.end(), seat.reference) == rejected.end()) rejected.push_back(seat.reference); break;
             case Verdict::unproven: ++unproven; break;

@@ -7,7 +7,7 @@
 #include <algorithm>
 #include <cmath>
 
-#include "engine/answer/judge_part.hpp"
+#include "engine/answer/rating.hpp"
 #include "engine/rule/stresses.hpp"
 #include "engine/words/numbers.hpp"
 
@@ -36,10 +36,12 @@ constexpr Phrase kPhrases[] = {
     {Stress::gate_voltage, "{} at", "gate"},                 {Stress::drive_voltage_lowest, "{} at the gate at the lowest", ""},
     {Stress::current_average, "{} mean through", "leg"},     {Stress::current_rms, "{} RMS through", "part"},
     {Stress::current_peak, "{} peak through", "part"},       {Stress::ripple_current, "{} ripple through", "part"},
+    {Stress::surge_integral, "{} through", "fuse"},
     {Stress::current_surge, "a surge of {} through", "part"},
     {Stress::output_ripple, "{} of output ripple, peak to peak", ""},
     {Stress::power, "{} lost in", "part"},                   {Stress::junction_temperature, "junction at {} in", "part"},
     {Stress::hot_spot_temperature, "hot spot at {} in", "part"}, {Stress::runaway_gain, "leakage heat gain {}", ""},
+    {Stress::air_temperature, "air at {} beside", "part"},   {Stress::series_resistance, "charged through {}", ""},
     {Stress::life, "life {}", ""},                           {Stress::regulation, "{} of the operating range is reached", ""},
 };
 const Phrase& phrase_of(Stress stress) {
@@ -55,12 +57,14 @@ std::string head(const Finding& finding, const Shown& shown) {
     std::string text = fmt::format(fmt::runtime(phrase.verb), value);
     if (*phrase.noun == '\0') return text;
     if (!finding.rating || !finding.rule.rating) {
-        for (const char* preposition : {" across", " through", " at", " lost in", " in"})
+        for (const char* preposition : {" across", " through", " at", " lost in", " beside", " in"})
             if (text.ends_with(preposition)) text.resize(text.size() - std::string_view(preposition).size());
         return finding.rule.stress == Stress::gate_voltage ? text + " at the gate" : text;
     }
     const Unit unit = info(*finding.rule.rating).unit;
-    text += " " + with_article(format_quantity(finding.printed.value_or(*finding.rating), unit)) + " " + phrase.noun;
+    const std::string& of = finding.rule.selects;
+    const char* noun = of == "fuse" || of == "choke" || of == "resistor" ? of.c_str() : phrase.noun;
+    text += " " + with_article(format_quantity(finding.printed.value_or(*finding.rating), unit)) + " " + noun;
     if (warm(finding) || !finding.used) return text;
     text += " (" + fmt::format("{:.0f} %", 100 * *finding.used);
     if (finding.printed) text += " of the " + format_quantity(*finding.rating, unit) + " that count here";
@@ -70,6 +74,7 @@ std::string head(const Finding& finding, const Shown& shown) {
 std::string too_far(const Finding& finding) {
     switch (finding.rule.stress) {
         case Stress::junction_temperature:
+        case Stress::air_temperature:
         case Stress::hot_spot_temperature: return "too hot";
         case Stress::life: return "too short";
         default: return at_least(finding) ? "too little" : "too much";
@@ -94,13 +99,14 @@ std::string tail(const Finding& finding, const Shown& shown) {
         case Stress::output_ripple: return "; " + limit + (finding.rule.requirement.empty() ? " is the rule: " : " is allowed: ") + left;
         case Stress::runaway_gain:
             return (finding.stress->value >= 1 ? ": it runs away" : "") + std::string("; the rule allows ") + limit + ": " + left;
+        case Stress::series_resistance: return "; the rule wants " + limit + ": " + left;
         case Stress::regulation: return *finding.left < 0 ? "; all of it is wanted" : "";
         default: return "; the rule " + std::string(at_least(finding) ? "wants " : "allows ") + limit + ": " + left;
     }
 }
 
 bool is_symbol(const std::string& name) {
-    for (const Family family : {Family::switch_, Family::rectifier, Family::capacitor})
+    for (const Family family : {Family::switch_, Family::rectifier, Family::capacitor, Family::fuse, Family::choke, Family::resistor})
         if (find_symbol(name, family)) return true;
     return false;
 }
@@ -198,26 +204,67 @@ std::string settle_of(const Finding& finding) {
     return out;
 }
 
-}  // namespace
-
-std::string rule_text(const Rule& rule) {
-    const StressInfo& about = info(rule.stress);
-    const std::string reference = rule.rating ? std::string(info(*rule.rating).name) : rule.requirement;
+std::string bound_text(const Rule& rule, Stress stress, const Piece& piece) {
+    const StressInfo& about = info(stress);
+    const std::string reference = piece.rating ? std::string(info(*piece.rating).name) : piece.expression ? piece.expression->text : piece.requirement;
     std::string meaning = reference;
     for (const RequirementInfo& one : requirements())
         if (one.name == reference) meaning = one.meaning;
-    switch (rule.bound) {
-        case BoundKind::fraction: return format_quantity(rule.value, Unit::fraction) + " of " + meaning;
-        case BoundKind::below: return format_quantity(rule.value, about.unit == Unit::celsius ? Unit::kelvin : about.unit) + " below " + meaning;
-        case BoundKind::absolute: return std::string(about.meaning) + " at most " + format_quantity(rule.value, about.unit);
+    switch (piece.bound) {
+        case BoundKind::fraction: return format_quantity(piece.value, Unit::fraction) + " of " + meaning;
+        case BoundKind::below: return format_quantity(piece.value, about.unit == Unit::celsius ? Unit::kelvin : about.unit) + " below " + meaning;
+        case BoundKind::absolute: return (rule.several.empty() ? std::string(about.meaning) + " at most " : "") + format_quantity(piece.value, about.unit);
         case BoundKind::at_least:
+            if (reference == "voltage applied") return (rule.several.empty() ? "at least " : "") + format_quantity(piece.value, about.unit) + " for each volt applied";
             if (reference.empty()) {
-                if (rule.stress == Stress::regulation && rule.value == 1) return "the whole operating range is reached";
-                return std::string(about.meaning) + " at least " + format_quantity(rule.value, about.unit);
+                if (stress == Stress::regulation && piece.value == 1) return "the whole operating range is reached";
+                return (rule.several.empty() ? std::string(about.meaning) + " at least " : "") + format_quantity(piece.value, about.unit);
             }
-            return "at least " + (rule.value == 1 ? "" : format_quantity(rule.value, Unit::fraction) + " of ") + meaning;
+            return std::string(rule.several.empty() ? "at least " : "") + (piece.value == 1 ? "" : format_quantity(piece.value, Unit::fraction) + " of ") + meaning;
+        default: return {};
     }
-    return {};
+}
+
+/// "60 % of U_R up to 70 °C, falling to 40 % at 110 °C, nothing above (by air temperature)"
+std::string curve_text(const Rule& rule) {
+    const auto& points = rule.curve->points;
+    const Unit unit = rule.bound == BoundKind::below ? (info(rule.stress).unit == Unit::celsius ? Unit::kelvin : info(rule.stress).unit)
+                      : needs_reference(rule)        ? Unit::fraction
+                                                     : info(rule.stress).unit;
+    std::string text = bound_text(rule, rule.stress, {rule.bound, rule.rating, rule.requirement, rule.expression, points.front().second});
+    text += " up to " + format_quantity(points.front().first, Unit::celsius);
+    for (std::size_t k = 1; k < points.size(); ++k)
+        text += std::string(points[k].second < points[k - 1].second ? ", falling to " : points[k].second > points[k - 1].second ? ", rising to " : ", still ") +
+                format_quantity(points[k].second, unit) + " at " + format_quantity(points[k].first, Unit::celsius);
+    return text + ", nothing above (by " + std::string(info(rule.curve->over).meaning) + ")";
+}
+
+/// How much the rule's value is worth: how it is known, and what was chosen where its source can be read in two ways.
+std::string known_text(const Rule& rule) {
+    std::string text;
+    if (rule.known == "from memory") text = "from memory, check it against the original";
+    else if (rule.known == "seen, secondary") text = "seen in a transcription, not in the original";
+    else if (!rule.known.empty() && rule.known != rule.source) text = rule.known;
+    if (!rule.reading.empty()) text += (text.empty() ? "" : "; ") + std::string("the stricter reading: ") + rule.reading;
+    return text;
+}
+
+}  // namespace
+
+std::string rule_text(const Rule& rule) {
+    if (rule.bound == BoundKind::not_permitted) return "not permitted";
+    if (rule.bound == BoundKind::not_covered) return "not covered";
+    std::string text;
+    if (rule.several.empty()) {
+        text = rule.curve ? curve_text(rule) : bound_text(rule, rule.stress, {rule.bound, rule.rating, rule.requirement, rule.expression, rule.value});
+    } else {
+        std::vector<std::string> pieces;
+        for (const Piece& piece : rule.several) pieces.push_back(bound_text(rule, rule.stress, piece));
+        text = std::string(rule.lowest ? "the lower of " : "the greater of ") + joined(pieces);
+    }
+    if (rule.rated_at == RatedAt::case_ && rule.rating == Symbol::P_tot) text += " at the case temperature";
+    if (rule.rated_at == RatedAt::printed && rule.rating) text += " as printed";
+    return text;
 }
 
 Wording words(const Finding& finding) {
@@ -228,8 +275,12 @@ Wording words(const Finding& finding) {
         const Rule& rule = finding.rule;
         std::string source = rule.source;
         if (!rule.clause.empty()) source += ", " + rule.clause;
-        if (!rule.known.empty() && rule.known != rule.source) source += "; " + rule.known;
+        if (const std::string known = known_text(rule); !known.empty()) source += "; " + known;
         out.rule = finding.book + ", " + rule.title + ": " + rule_text(rule) + (source.empty() ? "" : " (" + source + ")");
+        if (rule.bound == BoundKind::not_permitted || rule.bound == BoundKind::not_covered) out.because = rule.why;
+        if (!finding.goes_before.empty()) out.beside = "the most special rule: it goes before " + joined(finding.goes_before);
+        if (!finding.binds_before.empty())
+            out.beside += (out.beside.empty() ? "" : "; ") + std::string("the tightest of ") + std::to_string(finding.binds_before.size() + 1) + " rules on this, before " + joined(finding.binds_before);
     }
     for (const Remedy& remedy : finding.remedies)
         if (remedy.action != Do::measure) out.mend += (out.mend.empty() ? "" : "; or ") + remedy_text(remedy);
@@ -278,6 +329,7 @@ std::string remedy_text(const Remedy& remedy) {
             return "a heatsink of " + format_quantity(rounded_down(remedy.at_most.value_or(0), 2), remedy.unit) + " or less in place of " + name;
         }
         case Do::swap: {
+            if (remedy.figure == "technology") return "a part of another kind";
             if (!remedy.at_most) return "another part";
             const std::string value = format_quantity(remedy.usual.value_or(*remedy.at_most), remedy.unit);
             return "a part whose R_DS(on) is guaranteed at " + value + " or less" +

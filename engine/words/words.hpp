@@ -15,6 +15,7 @@ struct Wording {
     std::string rule;     ///< "house, aluminium voltage: 80 % of U_R (common practice)"
     std::string mend;     ///< "a 25 V part or higher (exactly: 22.7 V); or an output no higher than 15.9 V"; may be empty
     std::string settle;   ///< "an ESR of 48 mΩ or less at 100 kHz (measure within 15 %)"; may be empty
+    std::string beside;   ///< "the most special rule: it goes before capacitor-voltage"; may be empty
     std::string rests_on; ///< "overshoot 20 % of 29.6 V, not measured"; may be empty
 };
 [[nodiscard]] Wording words(const Finding& finding);
