@@ -57,6 +57,12 @@ int run(Session& session, const Call& call) {
                      {"summary", summary(report, converter)}};
         body["seats"] = Json::array();
         for (const SeatReport& seat : report.seats) body["seats"].push_back(json_of(seat));
+        body["beside"] = Json::array();
+        for (const SeatReport& one : report.beside) {
+            Json item = json_of(one);
+            item.erase("seat");
+            body["beside"].push_back(item);
+        }
         body["converter"] = Json::array();
         for (const Finding& finding : report.converter) body["converter"].push_back(json_of(finding));
         body["hottest"] = json_of(report.exposure.hottest);
@@ -75,6 +81,8 @@ int run(Session& session, const Call& call) {
     session.out << heading(converter.title, session.colour) << '\n' << folded(summary(report, converter)) << "\n\n";
     for (const SeatReport& seat : report.seats)
         session.out << with_verdict_painted(folded_lines(line(seat), 5), seat.verdict, session.colour);
+    for (const SeatReport& one : report.beside)
+        session.out << with_verdict_painted(folded_lines(line(one), 5), one.verdict, session.colour);
     if (session.quiet) return status;
     const auto blocks = [&](const std::vector<Finding>& findings) {
         for (const Finding& finding : findings)
@@ -84,6 +92,7 @@ int run(Session& session, const Call& call) {
     };
     blocks(report.converter);
     for (const SeatReport& seat : report.seats) blocks(seat.findings);
+    for (const SeatReport& one : report.beside) blocks(one.findings);
     print_losses(session, report.exposure);
     section(session, "not included", report.exposure.not_included);
     section(session, "warnings", report.exposure.warnings);

@@ -23,6 +23,7 @@ int figures(Session& session) {
     if (session.json) {
         Json list = Json::array();
         for (const SymbolInfo& row : symbols()) {
+            if (!row.in_switch && !row.in_rectifier && !row.in_capacitor) continue;  // of what stands in converter files only
             Json families = Json::array();
             if (row.in_switch) families.push_back("switch");
             if (row.in_rectifier) families.push_back("rectifier");

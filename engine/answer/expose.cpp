@@ -353,6 +353,7 @@ class Search {
             const auto fitted = setup_.fitted.find(seat);
             exposure.seats[seat].resize(fitted == setup_.fitted.end() ? 1 : fitted->second.size());
         }
+        exposure.beside.resize(benches_.front().beside.size());
         std::map<Spot, Operated> again;
         const auto operated_at = [&](const Spot& spot) -> const Operated& {
             const auto found = again.find(spot);
@@ -363,7 +364,8 @@ class Search {
             const StressKey& key = sight_.keys[k];
             if (!worst_[k].any) continue;
             const Spot& spot = worst_[k].spot;
-            exposure.seats[key.seat][key.entry].stresses.push_back(explain(benches_[spot.variant], key, at(spot), operated_at(spot)));
+            PartExposure& of = key.beside >= 0 ? exposure.beside[static_cast<std::size_t>(key.beside)] : exposure.seats[key.seat][key.entry];
+            of.stresses.push_back(explain(benches_[spot.variant], key, at(spot), operated_at(spot)));
         }
         for (const Sight::Missing& missing : sight_.missing)
             exposure.seats[missing.seat][missing.entry].missing.emplace_back(missing.stress, missing.figure);

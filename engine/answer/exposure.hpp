@@ -60,6 +60,7 @@ struct PartExposure {
 
 struct Exposure {
     std::map<Seat, std::vector<PartExposure>> seats;  ///< as Setup::fitted; a bare element gives one PartExposure
+    std::vector<PartExposure> beside;                 ///< fuse, cores, sense resistor …: in the order of beside_of
     PartExposure converter;                           ///< regulation
     At hottest;                        ///< the point of the largest total loss
     std::vector<Loss> losses;          ///< there; sums to P_in − P_out

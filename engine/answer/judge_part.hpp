@@ -34,6 +34,7 @@ struct JudgedPart {
     std::optional<double> life_required;    ///< [s]
     std::optional<double> ripple_allowed;   ///< at the output, peak to peak [V]
     std::optional<double> drive_lowest, drive_highest;  ///< gate drive [V]
+    bool voltages_only = false;           ///< it merely sits on a voltage: other rules do not apply
     std::string today;                    ///< ISO 8601; empty: measurements do not expire
     std::optional<SinkShare> sink;
     Probe probe;          ///< may be empty: then no bound is searched by solving again

@@ -21,4 +21,7 @@ struct BothEnds {
 [[nodiscard]] std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, const Rulebook& book, const std::vector<Seat>& seats,
                                                   bool search, const Progress& progress = {});
 
+/// What stands beside the seats, from what it sees at both ends.
+[[nodiscard]] std::vector<SeatReport> judge_beside(const Setup& setup, const BothEnds& ends, const Rulebook& book);
+
 }  // namespace binwright

@@ -137,6 +137,7 @@ Bench bench_of(const Setup& setup, End end, const Allowances& allowances) {
         for (const BankModel& kind : kinds)
             not_included(kind.model.missing, "ESR", fmt::format("{} ESR", bench.setup->converter.reference(seat)));
     bench.connected = connect(setup, bench.models, end);
+    bench.beside = beside_of(setup.converter);
     const auto& winding = setup.converter.winding;
     const Topology& topology = *setup.converter.topology;
     const auto told = [&](const char* name, const std::optional<WindingConfig>& config) {

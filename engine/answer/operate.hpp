@@ -5,6 +5,7 @@
 #include <string>
 #include <vector>
 
+#include "engine/answer/beside.hpp"
 #include "engine/answer/connect.hpp"
 #include "engine/answer/exposure.hpp"
 #include "engine/answer/models.hpp"
@@ -24,6 +25,7 @@ struct Bench {
     HeatLayout layout;                    ///< seats: those of `heated`, ambient of the point
     std::vector<Seat> heated;             ///< switch, rectifier: whose junction temperature can be computed
     std::optional<Connected> connected;   ///< the input connected hot
+    std::vector<Beside> beside;           ///< what else the file names
     std::vector<std::string> assumptions, not_included;
     std::vector<std::pair<Seat, std::string>> no_heat;  ///< seats without a junction temperature, and what is missing
 };

@@ -8,11 +8,12 @@
 
 namespace binwright {
 
-/// One stress of one fitted kind.
+/// One stress of one fitted kind, or of what stands beside.
 struct StressKey {
     Seat seat;
     std::size_t entry;
     Stress stress;
+    int beside = -1;  ///< index into Bench::beside; then seat means nothing, and entry is no entry of any seat
     [[nodiscard]] bool lowest_is_worst() const { return stress == Stress::life || stress == Stress::drive_voltage_lowest; }
 };
 

@@ -12,7 +12,8 @@
 
 namespace binwright {
 
-enum class Family { switch_, rectifier, capacitor };
+/// The first three are kept in bins and fitted into seats; the others stand beside them, in converter files only.
+enum class Family { switch_, rectifier, capacitor, fuse, choke, resistor };
 
 /// Letter symbols of IEC 60747-8 (switch), IEC 60747-2 (rectifier) and IEC 60384 (capacitor).
 enum class Symbol {
@@ -20,6 +21,7 @@ enum class Symbol {
     V_RRM, I_FAV, I_FSM, V_F, I_R, C_j, Q_rr, t_rr,                              // rectifier
     T_jmax, R_thjc, R_thja,                                                      // both
     C, U_R, ESR, tan_delta, I_ripple, T_max, life,                               // capacitor
+    I_N, I2t, I_sat, P_N,                                                        // fuse, fuse, choke, resistor
 };
 
 /// Conditions of a figure; absent = not stated. Temperature in kelvin (junction, case or body as the symbol implies).
@@ -117,7 +119,8 @@ struct Lot {
 [[nodiscard]] std::string_view to_string(Known known);     ///< "measured", "datasheet", "marked", "told", "kind"
 [[nodiscard]] std::string_view to_string(Column column);   ///< "", "min", "typ", "max"
 [[nodiscard]] std::string_view to_string(Origin origin);   ///< "new", "surplus", "pulled"
-[[nodiscard]] std::optional<Family> find_family(std::string_view text);
+[[nodiscard]] std::optional<Family> find_family(std::string_view text);       ///< of those that a bin keeps
+[[nodiscard]] std::optional<Family> find_any_family(std::string_view text);   ///< of all that rules speak of
 [[nodiscard]] std::optional<Known> find_known(std::string_view text);
 [[nodiscard]] std::optional<Column> find_column(std::string_view text);
 [[nodiscard]] std::optional<Origin> find_origin(std::string_view text);

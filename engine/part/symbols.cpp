@@ -45,7 +45,22 @@ constexpr SymbolInfo kSymbols[] = {
     {Symbol::I_ripple, "I_R~", "Iripple", "ripple current rating", Unit::ampere, false, false, true, true, false, Better::higher, tone(120, 105)},
     {Symbol::T_max, "T_max", "Tmax", "highest temperature", Unit::celsius, false, false, true, true, false, Better::higher, none},
     {Symbol::life, "life", "life", "rated life", Unit::second, false, false, true, true, false, Better::higher, none},
+    {Symbol::I_N, "I_N", "In", "rated current", Unit::ampere, false, false, false, true, false, Better::higher, none},
+    {Symbol::I2t, "I2t", "I2t", "melting integral", Unit::ampere2_second, false, false, false, true, false, Better::higher, none},
+    {Symbol::I_sat, "I_sat", "Isat", "saturation current", Unit::ampere, false, false, false, true, false, Better::higher, none},
+    {Symbol::P_N, "P_N", "Pn", "rated power", Unit::watt, false, false, false, true, false, Better::higher, none},
 };
+
+/// What stands beside the three families that bins keep.
+std::optional<Family> beside(Symbol symbol) {
+    switch (symbol) {
+        case Symbol::I_N:
+        case Symbol::I2t: return Family::fuse;
+        case Symbol::I_sat: return Family::choke;
+        case Symbol::P_N: return Family::resistor;
+        default: return std::nullopt;
+    }
+}
 
 std::string folded(std::string_view text) {
     std::string out;
@@ -60,7 +75,7 @@ std::optional<Value> find_in(const std::array<std::string_view, N>& names, std::
     return std::nullopt;
 }
 
-constexpr std::array<std::string_view, 3> kFamilies = {"switch", "rectifier", "capacitor"};
+constexpr std::array<std::string_view, 6> kFamilies = {"switch", "rectifier", "capacitor", "fuse", "choke", "resistor"};
 constexpr std::array<std::string_view, 5> kKnown = {"measured", "datasheet", "marked", "told", "kind"};
 constexpr std::array<std::string_view, 4> kColumns = {"", "min", "typ", "max"};
 constexpr std::array<std::string_view, 3> kOrigins = {"new", "surplus", "pulled"};
@@ -78,7 +93,10 @@ const SymbolInfo& info(Symbol symbol) {
 std::optional<Symbol> find_symbol(std::string_view spelling, Family family) {
     const std::string wanted = folded(spelling);
     for (const SymbolInfo& entry : kSymbols) {
-        const bool fits = family == Family::switch_ ? entry.in_switch : family == Family::rectifier ? entry.in_rectifier : entry.in_capacitor;
+        const bool fits = family == Family::switch_     ? entry.in_switch
+                          : family == Family::rectifier ? entry.in_rectifier
+                          : family == Family::capacitor ? entry.in_capacitor
+                                                        : beside(entry.symbol) == family;
         if (fits && (folded(entry.name) == wanted || folded(entry.plain) == wanted)) return entry.symbol;
     }
     return std::nullopt;
@@ -88,7 +106,11 @@ std::string_view to_string(Family family) { return kFamilies[static_cast<std::si
 std::string_view to_string(Known known) { return kKnown[static_cast<std::size_t>(known)]; }
 std::string_view to_string(Column column) { return kColumns[static_cast<std::size_t>(column)]; }
 std::string_view to_string(Origin origin) { return kOrigins[static_cast<std::size_t>(origin)]; }
-std::optional<Family> find_family(std::string_view text) { return find_in<Family>(kFamilies, text); }
+std::optional<Family> find_any_family(std::string_view text) { return find_in<Family>(kFamilies, text); }
+std::optional<Family> find_family(std::string_view text) {
+    const auto found = find_any_family(text);
+    return found && *found <= Family::capacitor ? found : std::nullopt;
+}
 std::optional<Known> find_known(std::string_view text) { return find_in<Known>(kKnown, text); }
 std::optional<Column> find_column(std::string_view text) { return find_in<Column>(kColumns, text); }
 std::optional<Origin> find_origin(std::string_view text) { return find_in<Origin>(kOrigins, text); }

@@ -115,7 +115,8 @@ TEST_CASE("no random point of the range beats the reported worst", "[engine][exp
             const std::vector<double> values = look(benches[v], sight, at, operate(benches[v], at, solvers[v]));
             for (std::size_t j = 0; j < values.size(); ++j) {
                 const StressKey& key = sight.keys[j];
-                const StressValue* worst = exposure.seats.at(key.seat)[key.entry].find(key.stress);
+                const PartExposure& of = key.beside >= 0 ? exposure.beside.at(static_cast<std::size_t>(key.beside)) : exposure.seats.at(key.seat)[key.entry];
+                const StressValue* worst = of.find(key.stress);
                 REQUIRE(worst != nullptr);
                 INFO(name << " " << to_string(key.seat) << " " << info(key.stress).name << " worst " << worst->value << " random " << values[j] << " at "
                           << at.input_voltage << " V, " << at.output_voltage << " V, " << at.output_current << " A, variant " << v);

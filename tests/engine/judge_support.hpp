@@ -17,7 +17,7 @@ inline Lot lot_of(const std::string& selector, const std::vector<std::pair<std::
     Lot lot;
     lot.label = label;
     const auto slash = selector.find('/');
-    lot.part.family = find_family(selector.substr(0, slash)).value();
+    lot.part.family = find_any_family(selector.substr(0, slash)).value();
     lot.part.name = "specimen";
     if (slash != std::string::npos) lot.part.attributes["technology"] = selector.substr(slash + 1);
     for (const auto& [symbol, text] : figures) {
