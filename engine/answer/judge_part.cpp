@@ -424,6 +424,7 @@ SeatReport judge_part(const JudgedPart& part, const Rulebook& book) {
             allow_for_unknown_kind(finding, part, book);
             allow_for_condition(finding, applied, part.lot.part);
             for (const Rule* general : applied.before) finding.goes_before.push_back(general->id);
+            std::sort(finding.goes_before.begin(), finding.goes_before.end());
             if (finding.verdict == Verdict::rejected || finding.verdict == Verdict::unproven) {
                 const auto more = remedies_for(finding, part, scale);
                 finding.remedies.insert(finding.remedies.end(), more.begin(), more.end());

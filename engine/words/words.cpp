@@ -295,7 +295,8 @@ std::string left(const Finding& finding) {
 
 std::string remedy_text(const Remedy& remedy) {
     const auto exactly = [&](double exact, double usual) {
-        const std::string text = format_quantity(rounded_up(exact, 3), remedy.unit);
+        const double zero = remedy.unit == Unit::celsius ? kCelsiusZero : 0;  // digits are those of °C
+        const std::string text = format_quantity(rounded_up(exact - zero, 3) + zero, remedy.unit);
         return text == format_quantity(usual, remedy.unit) ? std::string() : " (exactly: " + text + ")";
     };
     const auto symbol = [&]() -> std::optional<Symbol> {
