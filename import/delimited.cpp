@@ -6,20 +6,47 @@ extern "C" {
 }
 
 #include <algorithm>
+#include <array>
 #include <memory>
 
 namespace binwright {
 namespace {
 
+/// The one that the first line holds most of outside quotes; the earlier of these where two are level.
 char delimiter_of(std::string_view text) {
-    const std::string_view first = text.substr(0, text.find('\n'));
-    char best = ',';
-    std::ptrdiff_t most = 0;
-    for (const char candidate : {',', ';', '\t'}) {
-        const auto count = std::count(first.begin(), first.end(), candidate);
-        if (count > most) most = count, best = candidate;
+    constexpr std::string_view candidates = ",;\t";
+    std::array<int, candidates.size()> count{};
+    bool quoted = false;
+    for (const char c : text) {
+        if (c == '"') quoted = !quoted;
+        if (quoted) continue;
+        if (c == '\n') break;
+        if (const std::size_t k = candidates.find(c); k != std::string_view::npos) ++count[k];
     }
-    return best;
+    return candidates[static_cast<std::size_t>(std::max_element(count.begin(), count.end()) - count.begin())];
+}
+
+/// Every line end as one '\n': CR LF, and the bare CR of old machines.
+std::string with_plain_line_ends(std::string_view text) {
+    std::string plain;
+    plain.reserve(text.size());
+    for (std::size_t k = 0; k < text.size(); ++k) {
+        if (text[k] != '\r') plain += text[k];
+        else if (k + 1 == text.size() || text[k + 1] != '\n') plain += '\n';
+    }
+    return plain;
+}
+
+/// Comment lines would confuse the quoting rules: blanks them, keeping line numbers. A '#' inside a quoted field is no comment.
+void blank_comments(std::string& text) {
+    bool quoted = false, starts = true;
+    for (std::size_t k = 0; k < text.size(); ++k) {
+        if (starts && !quoted && text[k] == '#')
+            while (k < text.size() && text[k] != '\n') text[k++] = ' ';
+        if (k == text.size()) break;
+        if (text[k] == '"') quoted = !quoted;
+        starts = text[k] == '\n';
+    }
 }
 
 /// Walks the text beside the parser, so that every field gets the place of its first character.
@@ -42,7 +69,7 @@ struct Walk {
     /// To the first character of the next field's content; remembers it.
     Field begin_field() {
         while (at < text.size() && (text[at] == ' ' || (text[at] == '\t' && delimiter != '\t'))) step();
-        return {"", line, column};
+        return {"", line, at < text.size() && text[at] == '"' ? column + 1 : column};
     }
     /// Past the field and its delimiter or line end. @returns false at a row's end
     bool end_field() {
@@ -87,6 +114,11 @@ std::size_t not_utf8(std::string_view text) {
         const auto c = static_cast<unsigned char>(text[k]);
         const std::size_t length = c < 0x80 ? 1 : (c >> 5) == 6 ? 2 : (c >> 4) == 14 ? 3 : (c >> 3) == 30 ? 4 : 0;
         if (length == 0 || k + length > text.size()) return k;
+        // RFC 3629, section 4: no longer form than needed, no surrogates, nothing above U+10FFFF.
+        const auto second = static_cast<unsigned char>(length > 1 ? text[k + 1] : 0x80);
+        if (c == 0xC0 || c == 0xC1 || c > 0xF4 || (c == 0xE0 && second < 0xA0) || (c == 0xED && second > 0x9F) || (c == 0xF0 && second < 0x90) ||
+            (c == 0xF4 && second > 0x8F))
+            return k;
         for (std::size_t j = 1; j < length; ++j)
             if ((static_cast<unsigned char>(text[k + j]) & 0xC0) != 0x80) return k;
         k += length;
@@ -94,20 +126,24 @@ std::size_t not_utf8(std::string_view text) {
     return std::string_view::npos;
 }
 
+std::size_t last_opening_quote(std::string_view text) {
+    std::size_t opening = 0;
+    bool quoted = false;
+    for (std::size_t k = 0; k < text.size(); ++k) {
+        if (text[k] != '"') continue;
+        if (quoted && k + 1 < text.size() && text[k + 1] == '"') ++k;
+        else if ((quoted = !quoted)) opening = k;
+    }
+    return opening;
+}
+
 }  // namespace
 
 std::vector<Row> read_delimited(std::string_view text, const std::string& file) {
     if (text.starts_with("\xEF\xBB\xBF")) text.remove_prefix(3);
     if (const std::size_t bad = not_utf8(text); bad != std::string_view::npos) refuse(file, text, bad, "the text is not UTF-8 here; save the file as UTF-8");
-    // Comment lines would confuse the quoting rules: blank them, keeping line numbers.
-    std::string plain(text);
-    for (std::size_t line = 0; line < plain.size();) {
-        std::size_t end = plain.find('\n', line);
-        if (end == std::string::npos) end = plain.size();
-        if (plain[line] == '#') std::fill(plain.begin() + static_cast<std::ptrdiff_t>(line), plain.begin() + static_cast<std::ptrdiff_t>(end), ' ');
-        line = end + 1;
-    }
-    std::erase(plain, '\r');
+    std::string plain = with_plain_line_ends(text);
+    blank_comments(plain);
     std::string_view body = plain;
     std::size_t head = body.find_first_not_of(" \n\t");
     const char delimiter = delimiter_of(head == std::string_view::npos ? body : body.substr(head));
@@ -118,8 +154,9 @@ std::vector<Row> read_delimited(std::string_view text, const std::string& file) 
     csv_set_delim(&parser, static_cast<unsigned char>(delimiter));
     Collected collected;
     const std::size_t used = csv_parse(&parser, plain.data(), plain.size(), on_field, on_row, &collected);
-    if (used != plain.size()) refuse(file, body, used > 0 ? used - 1 : 0, "a quote stands inside a field that does not begin with one");
-    if (csv_fini(&parser, on_field, on_row, &collected) != 0) refuse(file, body, body.rfind('"'), "this quote is never closed");
+    if (used != plain.size())
+        refuse(file, body, used, body[used] == '"' ? "a quote stands inside a field that does not begin with one" : "text follows the quote that closes its field");
+    if (csv_fini(&parser, on_field, on_row, &collected) != 0) refuse(file, body, last_opening_quote(body), "this quote is never closed");
 
     std::vector<Row> rows;
     Walk walk{body, delimiter};

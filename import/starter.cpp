@@ -36,6 +36,13 @@ std::vector<std::string_view> pieces(std::string_view cell) {
     }
 }
 
+std::string in_small_letters(std::string_view text) {
+    std::string small(text);
+    for (char& c : small)
+        if (c >= 'A' && c <= 'Z') c = static_cast<char>(c - 'A' + 'a');
+    return small;
+}
+
 /// A table of delimited text whose first row names the columns.
 class Sheet {
   public:
@@ -44,6 +51,23 @@ class Sheet {
         if (rows_.empty()) throw InputError(Fault{{file_, 1, 1}, "", "the file has no row of column names", "a first row such as family,name,…"});
         header_ = rows_.front();
         rows_.erase(rows_.begin());
+        for (std::size_t k = 0; k < header_.size(); ++k)
+            for (std::size_t before = 0; before < k; ++before)
+                if (header_[k].text == header_[before].text)
+                    fault(header_[k], header_[k].text, fmt::format("the column \"{}\" stands twice in the first row", header_[k].text), "each column once");
+    }
+    /// A fault, where a column is not there. @returns whether it is
+    bool needs(std::string_view column) {
+        const bool there = std::any_of(header_.begin(), header_.end(), [&](const Field& field) { return field.text == column; });
+        if (!there) fault(header_.front(), std::string(column), fmt::format("there is no column \"{}\"", column), "a first row such as family,name,…");
+        return there;
+    }
+    /// A fault, where a row has not as many fields as there are columns. @returns whether it has
+    bool fits(const Row& row) {
+        if (row.size() == header_.size()) return true;
+        const Field& at = row.size() > header_.size() ? row[header_.size()] : row.back();
+        fault(at, "", fmt::format("the row has {} field{}, and there are {} columns", row.size(), row.size() == 1 ? "" : "s", header_.size()), "as many fields as columns");
+        return false;
     }
     [[nodiscard]] const std::vector<Row>& rows() const { return rows_; }
     [[nodiscard]] const Row& header() const { return header_; }
@@ -89,6 +113,8 @@ void read_figures(Sheet& sheet, const Field& cell, Symbol symbol, std::vector<Fi
                 piece = piece.substr(space + 1);
             }
         try {
+            if (known == Known::kind && info(symbol).rating)
+                throw InputError(Fault{{"", 1, 1}, "", fmt::format("{} is a rating: printed or published, never typical of a kind", name), "a figure such as 55 V"});
             into.push_back(parse_figure(symbol, piece, known));
         } catch (const InputError& error) {
             int offset = 0;
@@ -114,22 +140,25 @@ std::vector<PartRecord> read_part_types(std::string_view text, const std::string
         sheet.fault(column, column.text, fmt::format("unknown column \"{}\"{}", column.text, near.empty() ? "" : fmt::format("; did you mean \"{}\"?", near)),
                     "a column named in the first row of the starter catalogue");
     }
+    const bool complete = sheet.needs("family") & sheet.needs("name");
+    std::map<std::string, int> line_of;  // by name in small letters: a bin takes "A" and "a" for one name
     for (const Row& row : sheet.rows()) {
+        if (!complete) break;
+        if (!sheet.fits(row)) continue;
         const Field family_cell = sheet.cell(row, "family");
         const auto family = find_family(family_cell.text);
         if (!family) {
             sheet.fault(family_cell, "family", fmt::format("\"{}\" is no family", family_cell.text), "switch, rectifier or capacitor");
             continue;
         }
-        if (row.size() > sheet.header().size()) {
-            sheet.fault(row[sheet.header().size()], "", fmt::format("the row has {} fields, and there are {} columns", row.size(), sheet.header().size()), "");
-            continue;
-        }
         PartRecord record;
         record.starter = true;
         record.part.family = *family;
-        record.part.name = sheet.cell(row, "name").text;
-        if (record.part.name.empty()) sheet.fault(row.front(), "name", "the part has no name", "a name unique in the bin");
+        const Field name = sheet.cell(row, "name");
+        record.part.name = name.text;
+        if (name.text.empty()) sheet.fault(name, "name", "the part has no name", "a name unique in the bin");
+        else if (const auto [first, fresh] = line_of.emplace(in_small_letters(name.text), name.line); !fresh)
+            sheet.fault(name, "name", fmt::format("\"{}\" is the name of the part in line {} already", name.text, first->second), "a name unique in the bin");
         for (std::size_t k = 0; k < row.size(); ++k) {
             const std::string& column = sheet.header()[k].text;
             if (row[k].text.empty() || column == "family" || column == "name") continue;
@@ -188,6 +217,7 @@ Edit demo_edit(const Store& store) {
     Sheet sheet(embedded("demo-lots.csv"), "demo-lots.csv");
     std::map<std::string, Family> lot_family;
     for (const Row& row : sheet.rows()) {
+        if (!sheet.fits(row)) continue;
         LotRecord lot;
         const Field part = sheet.cell(row, "part");
         const auto type = types.find(part.text);
@@ -214,6 +244,7 @@ Edit demo_edit(const Store& store) {
 
     Sheet readings(embedded("demo-readings.csv"), "demo-readings.csv");
     for (const Row& row : readings.rows()) {
+        if (!readings.fits(row)) continue;
         const Field number = readings.cell(row, "number"), symbol_cell = readings.cell(row, "symbol"), figure = readings.cell(row, "figure");
         const auto lot = lots.find(number.text);
         if (lot == lots.end()) {
