@@ -30,6 +30,23 @@ bool worse(const Figure& a, const Figure& b) {
 /// Measurements of one figure under different conditions are different figures.
 bool same_conditions(const Figure& a, const Figure& b) { return a.symbol == b.symbol && a.at == b.at && a.both_legs == b.both_legs; }
 
+/// Whether a reading speaks of what a type's figure speaks of: within a factor of 2 in voltage, 3 in current and in frequency, and
+/// within 20 K; a condition that is not stated counts as the usual one. Common practice, no source.
+bool comparable(const Figure& reading, const Figure& figure) {
+    const Conditions& usual = info(figure.symbol).usual;
+    const auto near = [](std::optional<double> a, std::optional<double> b, const std::optional<double>& otherwise, double factor) {
+        if (!a) a = otherwise;
+        if (!b) b = otherwise;
+        if (!a || !b) return true;
+        if (*a == *b) return true;
+        return *a > 0 && *b > 0 && std::max(*a / *b, *b / *a) <= factor * (1 + 1e-9);
+    };
+    const auto warm = [&](const Conditions& at) { return at.temperature ? at.temperature : usual.temperature; };
+    if (const auto a = warm(reading.at), b = warm(figure.at); a && b && std::abs(*a - *b) > 20) return false;
+    return near(reading.at.voltage, figure.at.voltage, usual.voltage, 2) && near(reading.at.current, figure.at.current, usual.current, 3) &&
+           near(reading.at.frequency, figure.at.frequency, usual.frequency, 3);
+}
+
 /// Why a reading lies outside what the type's own figure allows; empty when it does not.
 std::string outside_type(const Figure& reading, const Part& part) {
     for (const Figure& figure : part.figures) {
@@ -99,13 +116,24 @@ Lot as_lot(const PartRecord& part, const LotRecord& lot, const std::vector<Readi
         if (found == counted.end()) counted.push_back(std::move(figure));
         else if (worse(figure, *found)) *found = std::move(figure);
     }
-    for (const Figure& figure : counted) {
-        // A measurement takes the place of estimates of its kind altogether, and of a published figure under the same conditions.
+    // A measurement takes the place of estimates of its kind under like conditions, and of a published figure under the same. One under
+    // quite other conditions speaks for none of them: carried over decades of current or by tens of kelvin it would be a guess.
+    std::vector<Figure> merged;
+    for (Figure& figure : counted) {
+        const auto of_symbol = [&](const Figure& other) { return other.symbol == figure.symbol; };
+        const auto like = [&](const Figure& other) { return of_symbol(other) && comparable(figure, other); };
+        const auto& type = part.part.figures;
+        if (std::any_of(type.begin(), type.end(), of_symbol) && std::none_of(type.begin(), type.end(), like)) {
+            result.uncounted.emplace_back(figure.symbol, fmt::format("{} measured as {}: too far from the conditions of its type's figures to count", info(figure.symbol).name,
+                                                                     format_figure(figure)));
+            continue;
+        }
         std::erase_if(result.part.figures, [&](const Figure& other) {
-            return other.symbol == figure.symbol && (other.known == Known::kind || same_conditions(other, figure));
+            return of_symbol(other) && (other.known == Known::kind ? like(other) : same_conditions(other, figure));
         });
+        merged.push_back(std::move(figure));
     }
-    result.part.figures.insert(result.part.figures.begin(), counted.begin(), counted.end());
+    result.part.figures.insert(result.part.figures.begin(), merged.begin(), merged.end());
     return result;
 }
 

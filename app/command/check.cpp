@@ -96,7 +96,16 @@ int run(Session& session, const Call& call) {
     print_losses(session, report.exposure);
     section(session, "not included", report.exposure.not_included);
     section(session, "warnings", report.exposure.warnings);
-    section(session, "assumed", report.exposure.assumptions);
+    std::vector<std::string> assumed = report.exposure.assumptions;
+    const auto rests = [&](const std::vector<SeatReport>& reports) {
+        for (const SeatReport& one : reports)
+            for (const Finding& finding : one.findings)
+                for (const std::string& what : finding.rests_on)
+                    if (const std::string text = one.reference + ": " + what; std::find(assumed.begin(), assumed.end(), text) == assumed.end()) assumed.push_back(text);
+    };
+    rests(report.seats);
+    rests(report.beside);
+    section(session, "assumed", assumed);
     section(session, "before power goes on", cautions(converter));
     return status;
 }

@@ -94,7 +94,9 @@ Setup with_fitted(const Setup& setup, Seat seat, std::vector<Fitted> fitted) {
 }
 
 bool ages_unmeasured(const Lot& lot) {
-    if (lot.origin != Origin::pulled || capacitor_kind(lot.part) != CapacitorKind::aluminium) return false;
+    if (lot.origin != Origin::pulled || lot.part.family != Family::capacitor) return false;
+    const CapacitorKind kind = capacitor_kind(lot.part);  // one whose kind stands nowhere may be wet
+    if (kind != CapacitorKind::aluminium && kind != CapacitorKind::hybrid && kind != CapacitorKind::unknown) return false;
     bool capacitance = false, resistance = false;
     for (const Figure& figure : lot.part.figures) {
         if (figure.known != Known::measured) continue;
@@ -153,14 +155,14 @@ double coupling_bias(const Topology& topology, const At& at) {
     return 0;
 }
 
-std::vector<CapacitorValues> bank_of(const Setup& setup, const Models& models, Seat seat, double voltage, End end) {
+std::vector<CapacitorValues> bank_of(const Setup& setup, const Models& models, Seat seat, double voltage, const At& at, End end) {
     std::vector<CapacitorValues> bank;
     const auto fitted = models.banks.find(seat);
     if (fitted != models.banks.end()) {
         for (const BankModel& kind : fitted->second) {
             if (!kind.model.capacitance) continue;
             const double c = *kind.model.capacitance * bias_factor(kind.model, voltage, end);
-            bank.push_back({c * kind.count, kind.model.resistance.value_or(0) / kind.count});
+            bank.push_back({c * kind.count, kind.model.resistance.value_or(0) * cold_factor(kind.model, at.ambient, end) / kind.count});
         }
         return bank;
     }
@@ -213,13 +215,13 @@ Circuit circuit_of(const Setup& setup, const Models& models, End end, const At& 
         circuit.rectifier_drop = element->drop.value_or(0);
         circuit.rectifier_resistance = element->resistance.value_or(0);
     }
-    circuit.input = bank_of(setup, models, Seat::input_capacitor, at.input_voltage, end);
-    circuit.output = bank_of(setup, models, Seat::output_capacitor, at.output_voltage, end);
+    circuit.input = bank_of(setup, models, Seat::input_capacitor, at.input_voltage, at, end);
+    circuit.output = bank_of(setup, models, Seat::output_capacitor, at.output_voltage, at, end);
     if (circuit.output.empty())
         lacks(converter, "seat.output_capacitor", "nothing is known of the output capacitor; nothing can be computed without its capacitance",
               "a fitted lot, figures, or an element");
     if (has_seat(*converter.topology, Seat::coupling_capacitor)) {
-        circuit.coupling_capacitor = bank_of(setup, models, Seat::coupling_capacitor, coupling_bias(*converter.topology, at), end);
+        circuit.coupling_capacitor = bank_of(setup, models, Seat::coupling_capacitor, coupling_bias(*converter.topology, at), at, end);
         if (circuit.coupling_capacitor.empty())
             lacks(converter, "seat.coupling_capacitor",
                   "nothing is known of the coupling capacitor; nothing can be computed without its capacitance",

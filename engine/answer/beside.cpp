@@ -42,6 +42,13 @@ std::vector<Beside> beside_of(const Converter& converter) {
         if (converter.drive.sense_power) sense.part.figures.push_back(printed(Symbol::P_N, *converter.drive.sense_power));
         all.push_back(std::move(sense));
     }
+    if (converter.clamp.voltage) {
+        Beside clamp{Beside::What::clamp, "clamp", {}, {}};
+        clamp.part.family = Family::resistor;
+        clamp.part.name = "at " + format_quantity(*converter.clamp.voltage, Unit::volt);
+        if (converter.clamp.power) clamp.part.figures.push_back(printed(Symbol::P_N, *converter.clamp.power));
+        all.push_back(std::move(clamp));
+    }
     if (converter.fuse.rating) {
         Beside fuse{Beside::What::fuse, "fuse", {}, {}};
         fuse.part.family = Family::fuse;
@@ -66,7 +73,8 @@ std::vector<Beside> beside_of(const Converter& converter) {
 std::vector<Stress> stresses_of(const Beside& one) {
     switch (one.what) {
         case Beside::What::fuse: return {Stress::current_average, Stress::surge_integral};
-        case Beside::What::sense: return {Stress::power};
+        case Beside::What::sense:
+        case Beside::What::clamp: return {Stress::power};
         case Beside::What::across: return {Stress::voltage_peak_repetitive, Stress::voltage_peak_single};
         default: return {Stress::current_peak};
     }

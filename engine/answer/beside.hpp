@@ -10,7 +10,7 @@
 namespace binwright {
 
 struct Beside {
-    enum class What { fuse, first_core, second_core, common_core, sense, across } what;
+    enum class What { fuse, first_core, second_core, common_core, sense, clamp, across } what;
     std::string name;             ///< "fuse", "primary winding", "sense resistor", or as the file names it
     Part part;                    ///< the figures that the file gives
     std::string between;          ///< of an `across`

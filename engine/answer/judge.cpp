@@ -132,6 +132,7 @@ std::vector<SeatReport> judge_setup(const Setup& setup, const BothEnds& ends, co
             part.worst = of(ends.worst, seat, entry);
             for (StressValue& value : surroundings(setup, ends.best, seat)) part.best.stresses.push_back(std::move(value));
             for (StressValue& value : surroundings(setup, ends.worst, seat)) part.worst.stresses.push_back(std::move(value));
+            part.shares_air = converter.enclosure.has_value();
             part.runaway_best = ends.best.runaway;
             part.runaway_worst = ends.worst.runaway;
             part.lowest_ambient = converter.operating.ambient.lowest;

@@ -27,6 +27,8 @@ bool celsius(const Rule& rule) { return info(rule.stress).unit == Unit::celsius;
 void look_at_figures(Finding& finding, const JudgedPart& part) {
     if (part.voltages_only) return;  // what the circuit puts there does not depend on it
     const auto resting = stress_row(finding.rule.stress).rests_on;
+    for (const auto& [symbol, why] : part.lot.uncounted)
+        if (std::find(resting.begin(), resting.end(), symbol) != resting.end() || finding.rule.rating == symbol) finding.rests_on.push_back(why);
     for (const Symbol symbol : resting)
         for (const Figure* figure : figures_of(part.lot.part, symbol))
             if (figure->known == Known::told &&
@@ -197,12 +199,14 @@ Finding judge_rule(const Rule& rule, const JudgedPart& part, double& scale) {
     finding.told = at_worst.told;
     look_at_figures(finding, part);
 
-    const bool heat = rule.stress == Stress::junction_temperature;
+    const bool warmed = part.shares_air && (rule.stress == Stress::hot_spot_temperature || rule.stress == Stress::life);
+    const bool heat = rule.stress == Stress::junction_temperature || warmed;
+    const double nowhere = upper(rule) ? kInfinite : 0;
     const auto worse = [&](double a, double b) { return upper(rule) ? std::max(a, b) : std::min(a, b); };
     const auto milder = [&](double a, double b) { return upper(rule) ? std::min(a, b) : std::max(a, b); };
     double hardest = worst ? worse(worst->value, best->value) : 0, mildest = worst ? milder(worst->value, best->value) : 0;
-    if (heat && part.runaway_worst) hardest = kInfinite;
-    if (heat && part.runaway_best) mildest = kInfinite;
+    if (heat && part.runaway_worst) hardest = nowhere;
+    if (heat && part.runaway_best) mildest = nowhere;
     const bool have_stress = worst || (heat && part.runaway_worst);
     const bool have_limits = held_worst.limit && held_best.limit;
     const double limit_worst = have_limits ? *held_worst.limit : 0, limit_best = have_limits ? *held_best.limit : 0;

@@ -28,6 +28,7 @@ struct JudgedPart {
     Lot lot;
     int count = 1;                        ///< in parallel
     PartExposure best, worst;             ///< at the best and the worst end of all spreads
+    bool shares_air = false;              ///< an enclosure holds the air: where a junction runs away, all in it goes with it
     bool runaway_best = false, runaway_worst = false;  ///< somewhere in the range no stable temperature exists
     double lowest_ambient = 298.15, highest_ambient = 298.15;  ///< [K]
     At top{};                             ///< the upper ends of the operating range (for what may be lowered)

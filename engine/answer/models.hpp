@@ -26,7 +26,7 @@ struct Models {
 [[nodiscard]] Models models_of(const Setup& setup, End end, const Allowances& allowances, double frequency);
 [[nodiscard]] Circuit circuit_of(const Setup& setup, const Models& models, End end, const At& at);
 
-/// A pulled aluminium electrolytic whose C and ESR were not both measured: its age is unknown.
+/// A pulled capacitor of a kind that dries out (aluminium, hybrid, or of no kind on record) whose C and ESR were not both measured: its age is unknown.
 [[nodiscard]] bool ages_unmeasured(const Lot& lot);
 
 [[nodiscard]] const PartExposure* find_exposure(const Exposure& exposure, Seat seat, std::size_t entry);

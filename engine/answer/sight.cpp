@@ -147,7 +147,11 @@ Terms switch_voltage_terms(const Bench& bench, const At& at, const Operated& ope
             rests_on.push_back("overshoot measured at an unstated current, taken as it is");
         terms.push_back({"overshoot, measured", volts});
     } else if (bench.setup->converter.clamp.voltage) {
-        terms.push_back({"up to the clamp", std::max(0.0, *bench.setup->converter.clamp.voltage - blocked)});
+        // A clamp below what the switch must block anyway does not hold it there: it only burns.
+        const double above = *bench.setup->converter.clamp.voltage - blocked;
+        terms.push_back({"up to the clamp", above > 0 ? above : bench.allowances.switch_overshoot * blocked});
+        if (!(above > 0)) rests_on.push_back(fmt::format("the clamp of {} lies below the {} that the switch blocks: it is not counted", format_quantity(*bench.setup->converter.clamp.voltage, Unit::volt),
+                                                         format_quantity(blocked, Unit::volt)));
     } else {
         const double share = bench.allowances.switch_overshoot;
         terms.push_back({"overshoot, assumed", share * blocked});
@@ -195,6 +199,20 @@ double leg_share(const Bench& bench) {
     return legs > 1 ? (1 + bench.allowances.sharing) / legs : 1.0;
 }
 
+/// ½·L_lk·I²·f·V_c/(V_c − V_out/n), V_c what the clamp leaves above the input: while it resets the leakage, the magnetising
+/// inductance goes on feeding it (any text on flyback converters). A clamp below what the switch must block takes what there is.
+double clamp_power(const Bench& bench, const At& at, const Operated& operated) {
+    const Circuit& circuit = operated.circuit;
+    const Topology& topology = *circuit.topology;
+    const double current = std::max(0.0, operated.state.switch_.current_turn_off);
+    const double stored = 0.5 * circuit.primary.inductance * (1 - circuit.coupling * circuit.coupling) * current * current * at.frequency;
+    const double blocked = operated.state.switch_.voltage_peak, clamped = *bench.setup->converter.clamp.voltage;
+    if (!(clamped > blocked)) return operated.state.input_power;
+    if (!topology.transformer) return stored;
+    const double above_input = clamped - at.input_voltage, reflected = operated.state.output_voltage_average / circuit.turns_ratio;
+    return above_input > reflected ? stored * above_input / (above_input - reflected) : operated.state.input_power;
+}
+
 constexpr std::size_t kNoEntry = static_cast<std::size_t>(-1);
 
 Terms beside_terms(const Bench& bench, const StressKey& key, const At& at, const Operated& operated, std::vector<std::string>& rests_on) {
@@ -214,6 +232,7 @@ Terms beside_terms(const Bench& bench, const StressKey& key, const At& at, const
                 if (part.name == "sense resistor") loss += part.power;
             return {{"loss", loss}};
         }
+        case Beside::What::clamp: return {{"leakage energy", clamp_power(bench, at, operated)}};
         case Beside::What::across: break;
     }
     const bool single = key.stress == Stress::voltage_peak_single;
@@ -335,6 +354,12 @@ Sight sight_of(const Bench& bench) {
             const bool heated = std::find(bench.heated.begin(), bench.heated.end(), seat) != bench.heated.end();
             const auto heat = [&](Stress stress) {
                 if (heated) see(seat, entry, stress);
+                const std::string& sink = converter.seat(seat).heatsink;
+                for (const Seat other : {Seat::switch_, Seat::rectifier}) {
+                    const bool counted = std::find(bench.heated.begin(), bench.heated.end(), other) != bench.heated.end();
+                    if (other != seat && !sink.empty() && converter.seat(other).heatsink == sink && !counted)
+                        lacks(seat, entry, stress, "the heat of " + converter.reference(other) + " on the same heatsink");
+                }
                 for (const auto& [where, figure] : bench.no_heat)
                     if (where == seat) lacks(seat, entry, stress, figure);
             };
@@ -420,6 +445,18 @@ Sight sight_of(const Bench& bench) {
             }
         }
     }
+    // A drop that is not on record is missing in every current: no seat holds on it, though it may break on what there is.
+    const auto unsure = [&](Seat of, const std::string& figure) {
+        const std::string what = figure + " of " + converter.reference(of);
+        for (const StressKey& key : sight.keys) {
+            const bool current = info(key.stress).unit == Unit::ampere || key.stress == Stress::power || key.stress == Stress::junction_temperature ||
+                                 key.stress == Stress::hot_spot_temperature || key.stress == Stress::life || key.stress == Stress::output_ripple ||
+                                 key.stress == Stress::runaway_gain;
+            if (current && key.stress != Stress::current_surge && key.seat != of) lacks(key.seat, key.entry, key.stress, what);
+        }
+    };
+    if (bench.models.rectifier && !bench.models.rectifier->threshold) unsure(Seat::rectifier, "V_F");
+    if (bench.models.switch_ && !bench.models.switch_->resistance) unsure(Seat::switch_, "R_DS(on)");
     for (std::size_t k = 0; k < bench.beside.size(); ++k)
         for (const Stress stress : stresses_of(bench.beside[k])) {
             const bool once = stress == Stress::surge_integral;
@@ -474,6 +511,8 @@ StressValue explain(const Bench& bench, const StressKey& key, const At& at, cons
         case Stress::life:
             if (const CapacitorModel* model = capacitor_at(bench, key)) {
                 take(model->rests_on);
+                if (const double factor = cold_factor(*model, at.ambient, bench.end); factor > 1.02 && model->resistance)
+                    value.rests_on.push_back(fmt::format("ESR at {} taken as {:.1f} times that at 20 °C", format_quantity(at.ambient, Unit::celsius), factor));
                 if (model->aged) value.rests_on.push_back("end-of-life C and ESR: pulled, and not measured");
                 if (!model->resistance) value.rests_on.push_back("ESR not on record, counted as 0");
             }

@@ -105,7 +105,7 @@ Converter read_converter(std::string_view text, const std::string& file, const s
     for (const std::string& change : changes) apply_change(items.root, change, faults);
     // Without a single readable line there is nothing to say beyond why.
     if (!items.whole && items.root.members.empty()) throw InputError(faults);
-    Converter converter = converter_from(items.root, file, items.whole, faults);
+    Converter converter = converter_from(items.root, file, items.whole, !changes.empty(), faults);
     if (faults.empty()) return converter;
     std::stable_sort(faults.begin(), faults.end(), [&file](const Fault& a, const Fault& b) {
         const auto rank = [&file](const Fault& fault) {

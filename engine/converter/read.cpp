@@ -13,8 +13,8 @@ namespace {
 
 class Filler {
   public:
-    Filler(const Item& root, const std::string& file, bool whole, std::vector<Fault>& faults)
-        : root_(root), whole_(whole), values_{{}, faults} {
+    Filler(const Item& root, const std::string& file, bool whole, bool changed, std::vector<Fault>& faults)
+        : root_(root), whole_(whole), changed_(changed), values_{{}, faults} {
         values_.converter.file = file;
     }
 
@@ -319,6 +319,10 @@ class Filler {
             const double value = typical.get(each.quantity);
             const bool both_read =
                 value != 0 && at({"operating", each.key}) && (range.lowest != 0 || range.highest != 0);
+            if (both_read && changed_ && !(value >= range.lowest && value <= range.highest)) {
+                typical.set(each.quantity, std::clamp(value, range.lowest, range.highest));  // a trial leaves what is usual behind
+                continue;
+            }
             if (both_read && !(value >= range.lowest && value <= range.highest))
                 fault(given->place, "operating.typical." + std::string(each.key),
                       "the typical " + std::string(each.meaning) + ", " + format_quantity(value, each.unit) +
@@ -408,6 +412,7 @@ class Filler {
 
     const Item& root_;
     bool whole_;
+    bool changed_;  ///< by a trial, on top of what the file says
     Values values_;
     std::set<std::string> misspelt_;  // keys that an unknown one was probably meant to be
 };
@@ -420,8 +425,8 @@ Item* find_member(Item& table, const std::string& key, std::optional<Symbol> sym
     return nullptr;
 }
 
-Converter converter_from(const Item& root, const std::string& file, bool whole, std::vector<Fault>& faults) {
-    return Filler(root, file, whole, faults).run();
+Converter converter_from(const Item& root, const std::string& file, bool whole, bool changed, std::vector<Fault>& faults) {
+    return Filler(root, file, whole, changed, faults).run();
 }
 
 }  // namespace binwright

@@ -13,7 +13,7 @@ namespace binwright {
 void apply_change(Item& root, const std::string& change, std::vector<Fault>& faults);
 
 /// Fills a Converter from values. `whole` false: some lines could not be read, so nothing is called missing.
-[[nodiscard]] Converter converter_from(const Item& root, const std::string& file, bool whole,
+[[nodiscard]] Converter converter_from(const Item& root, const std::string& file, bool whole, bool changed,
                                        std::vector<Fault>& faults);
 
 /// The member of a table that is this key; figures also under another spelling of their symbol.

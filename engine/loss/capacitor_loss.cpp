@@ -123,6 +123,20 @@ CapacitorModel capacitor_model(const Part& part, double frequency, End end, cons
     return model;
 }
 
+double cold_factor(const CapacitorModel& model, double temperature, End end) {
+    constexpr double room = kCelsiusZero + 20;
+    if (!(temperature < room) || !(temperature > 0)) return 1;
+    double doubling = 0;
+    switch (model.kind) {
+        case CapacitorKind::aluminium:
+        case CapacitorKind::unknown: doubling = end == End::best ? 35 : end == End::typical ? 23 : 18; break;
+        case CapacitorKind::hybrid: doubling = end == End::best ? 60 : end == End::typical ? 40 : 30; break;
+        case CapacitorKind::tantalum: doubling = end == End::best ? 60 : end == End::typical ? 50 : 40; break;
+        default: return 1;
+    }
+    return std::exp2((room - temperature) / doubling);
+}
+
 double bias_factor(const CapacitorModel& model, double voltage, End end) {
     if (model.kind != CapacitorKind::ceramic2 || !model.rated_voltage || !(*model.rated_voltage > 0)) return 1;
     const double share = std::clamp(voltage / *model.rated_voltage, 0.0, 1.0);

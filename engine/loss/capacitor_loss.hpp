@@ -40,6 +40,11 @@ struct Ageing {
 /// the rated voltage; best end: nine tenths and six tenths). 1 for every other kind.
 [[nodiscard]] double bias_factor(const CapacitorModel& model, double voltage, End end);
 
+/// By how much the ESR of an electrolyte grows below 20 °C, without self-heating: doubling every 35 K, 23 K or 18 K (best, typical,
+/// worst) where it is wet, every 60 … 30 K in hybrids, 60 … 40 K in solid tantalum; 1 for other kinds and from 20 °C up. Planning
+/// figures: low-ESR series are printed with two to three times the impedance at −10 °C, and up to ten at −40 °C (common practice, no source).
+[[nodiscard]] double cold_factor(const CapacitorModel& model, double temperature, End end);
+
 /// Self-heating of a body in still air.
 struct SurfaceHeating {
     double current;     ///< [A]

@@ -102,6 +102,7 @@ struct Lot {
     int count = 1;
     bool suspect = false;      ///< a reading lies outside the type's limits
     std::string suspect_why;   ///< sentence, when suspect
+    std::vector<std::pair<Symbol, std::string>> uncounted;  ///< readings under conditions too far from the type's figures to stand for them: why
 };
 
 /// Reads "17.5 mΩ max @ 10 V", "0.62 V max @ 15 A, 25 °C", "15 mA @ 45 V, 100 °C", "both legs 30 A", "12 .. 17.5 .. 22 mΩ"

@@ -329,3 +329,26 @@ TEST_CASE("a bin of the first schema still opens with all it holds", "[catalog][
     CHECK(store.undo()->what == "measure 1-B");
     CHECK(store.readings(store.lots().front().id).empty());
 }
+
+TEST_CASE("a reading under quite other conditions does not stand for the type's figures", "[catalog][lots]") {
+    // A multimeter's diode test says nothing of the drop at 10 A, nor a bench supply of 5 V of the leakage at 45 V and 100 °C.
+    PartRecord type;
+    type.part.family = Family::rectifier;
+    type.part.name = "Schottky";
+    type.part.figures = {parse_figure(Symbol::V_F, "0.45 .. 0.5 .. 0.6 V @ 10 A, 25 °C", Known::kind), parse_figure(Symbol::I_R, "5 .. 9 .. 18 mA @ 45 V, 100 °C", Known::kind)};
+    LotRecord lot;
+    lot.number = 136;
+    const auto reading = [](Symbol symbol, const char* text) {
+        ReadingRecord one;
+        one.figure = parse_figure(symbol, text, Known::measured);
+        return one;
+    };
+    const Lot far = as_lot(type, lot, {reading(Symbol::V_F, "0.18 V @ 1 mA, 25 °C"), reading(Symbol::I_R, "1 µA @ 5 V, 25 °C")});
+    CHECK(far.part.figures == type.part.figures);
+    REQUIRE(far.uncounted.size() == 2);
+    CHECK(far.uncounted[1].second == "I_R measured as 1 µA @ 5 V, 25 °C: too far from the conditions of its type's figures to count");
+    const Lot near = as_lot(type, lot, {reading(Symbol::I_R, "7 mA @ 40 V, 95 °C")});
+    CHECK(near.uncounted.empty());
+    REQUIRE(near.part.figures.size() == 2);
+    CHECK(near.part.figures.front().known == Known::measured);
+}

@@ -388,7 +388,7 @@ TEST_CASE("switch and rectifier of a sepic see input plus output when ripple is 
         const auto s = solve(d.circuit, d.point);
         RC_ASSERT(s.reached);
         const double sum = d.point.input_voltage + *d.point.output_voltage;
-        RC_ASSERT(s.switch_.voltage_peak >= sum * (1 - 1e-9));
+        RC_ASSERT(s.switch_.voltage_peak >= sum * (1 - 1e-7));  // ripple may be nothing, and figures are exact to 1e-7
         RC_ASSERT(s.switch_.voltage_peak < sum * 1.02);
         RC_ASSERT(std::abs(s.rectifier.reverse_voltage_peak / sum - 1) < 0.02);
     });

@@ -1,0 +1,69 @@
+// SPDX-License-Identifier: GPL-3.0-or-later
+// What is not known of one part must not let another hold.
+#include <catch2/catch.hpp>
+
+#include "engine/words/words.hpp"
+#include "tests/engine/exposure_support.hpp"
+
+using namespace binwright;
+using namespace binwright::test;
+
+namespace {
+
+Setup without(Setup setup, Seat seat, Symbol symbol) {
+    std::vector<Fitted> fitted = setup.fitted.at(seat);
+    std::erase_if(fitted.front().lot.part.figures, [&](const Figure& figure) { return figure.symbol == symbol; });
+    return with_fitted(setup, seat, fitted);
+}
+
+const Finding* finding_of(const CheckReport& report, Seat seat, const std::string& rule) {
+    for (const SeatReport& one : report.seats)
+        if (one.seat == seat)
+            for (const Finding& finding : one.findings)
+                if (finding.rule.id == rule) return &finding;
+    return nullptr;
+}
+
+}  // namespace
+
+TEST_CASE("a rectifier without its V_F leaves the currents of every seat unproven", "[engine][answer][unknown]") {
+    const CheckReport report = check(without(setup_of(supply_text()), Seat::rectifier, Symbol::V_F), *find_rulebook("house"));
+    const Finding* ripple = finding_of(report, Seat::output_capacitor, "capacitor-ripple");
+    REQUIRE(ripple != nullptr);
+    CHECK(ripple->verdict == Verdict::unproven);
+    CHECK(words(*ripple).line.ends_with("V_F of D1 is not known"));
+    CHECK(finding_of(report, Seat::output_capacitor, "polymer-voltage")->verdict == Verdict::holds);  // a regulated voltage does not depend on it
+}
+
+TEST_CASE("a rectifier whose heat is not known leaves the switch beside it on the sink unproven", "[engine][answer][unknown]") {
+    const CheckReport report = check(without(setup_of(supply_text()), Seat::rectifier, Symbol::R_thjc), *find_rulebook("house"));
+    const Finding* heat = finding_of(report, Seat::switch_, "switch-temperature");
+    REQUIRE(heat != nullptr);
+    CHECK(heat->verdict == Verdict::unproven);
+    CHECK(words(*heat).line.ends_with("the heat of D1 on the same heatsink is not known"));
+}
+
+TEST_CASE("where a junction runs away in a box no capacitor in it holds on its temperature", "[engine][answer][unknown]") {
+    std::string text = supply_text();
+    text.replace(text.find("fitted    = \"rectifier\""), 23, "fitted    = \"leaky\"");
+    text.insert(text.find("[seat.switch]"), "[enclosure]\nresistance = \"40 K/W\"\n");
+    const CheckReport report = check(setup_of(text), *find_rulebook("house"));
+    CHECK(report.exposure.runaway);
+    for (const char* rule : {"capacitor-hot-spot", "polymer-life"})
+        if (const Finding* finding = finding_of(report, Seat::output_capacitor, rule)) CHECK(finding->verdict != Verdict::holds);
+    REQUIRE(finding_of(report, Seat::output_capacitor, "capacitor-hot-spot") != nullptr);
+}
+
+TEST_CASE("a clamp below what the switch blocks earns no credit and burns what there is", "[engine][answer][unknown]") {
+    std::string text = supply_text("flyback", "[clamp]\nvoltage = \"20 V\"\npower = \"2 W\"\n");
+    text.erase(text.find("overshoot = "), std::string("overshoot = \"4 V @ 9.5 A\"").size());
+    text.insert(text.find("[winding.primary]"), "leakage = \"1 µH\"\n");
+    const CheckReport report = check(setup_of(text), *find_rulebook("house"));
+    const StressValue* seen = report.exposure.seats.at(Seat::switch_).front().find(Stress::voltage_peak_repetitive);
+    REQUIRE(seen != nullptr);
+    CHECK(seen->value > 1.15 * 30);  // 15 V + 15 V, and the assumed fifth
+    REQUIRE_FALSE(seen->rests_on.empty());
+    CHECK(seen->rests_on.front().starts_with("the clamp of 20 V lies below the "));
+    for (const SeatReport& one : report.beside)
+        if (one.reference == "clamp") CHECK(one.verdict == Verdict::rejected);
+}
