@@ -31,6 +31,7 @@ struct Spot {
 
 constexpr double kSearching = 1e-4;         ///< how well a point is known that is only compared with others
 constexpr double kTightest = 0.999;         ///< coupling of two windings, as far as the network takes it
+constexpr double kLeastLoad = 1e-3;          ///< of the highest load: with none at all, an output that must take pulses rises without end
 constexpr std::size_t kWorthAThread = 12;   ///< points; a thread costs about as much as one of them
 
 class Search {
@@ -73,6 +74,7 @@ class Search {
     bool runaway_ = false;
 
     static OperatingRange widened(OperatingRange range) {
+        range.output_current.lowest = std::max(range.output_current.lowest, kLeastLoad * range.output_current.highest);
         if (range.output_tolerance) {
             range.output_voltage.lowest *= 1 - *range.output_tolerance;
             range.output_voltage.highest *= 1 + *range.output_tolerance;
@@ -399,11 +401,17 @@ class Search {
                 exposure.assumptions.push_back(fmt::format("gate drive takes {} from the drive supply, not counted in the efficiency",
                                                            format_quantity(hottest.gate_power, Unit::watt)));
         }
+        if (setup_.converter.operating.output_current.lowest < range_.output_current.lowest)
+            exposure.assumptions.push_back(fmt::format("a load of {} counted as {}: with none, an output that must take the shortest pulses rises without end",
+                                                       format_quantity(setup_.converter.operating.output_current.lowest, Unit::ampere),
+                                                       format_quantity(range_.output_current.lowest, Unit::ampere)));
         if (!setup_.converter.drive.maximum_duty) exposure.assumptions.push_back("no duty limit is given");
         const auto& winding = setup_.converter.winding;
         const bool coupled = winding.coupling && winding.coupling->single() && winding.coupling->highest > 0 && winding.coupling->highest < 1;
         if (coupled || (winding.leakage && winding.leakage->single() && winding.leakage->highest > 0))
             exposure.assumptions.push_back("the leakage of the windings taken as uncertain by half");
+        if (!setup_.converter.operating.output_tolerance) exposure.assumptions.push_back("no output_tolerance is given: the output is taken as exactly what is set");
+        if (winding.primary && !winding.primary->tolerance) exposure.assumptions.push_back("no tolerance is given for the windings: their inductance is taken as exact");
         if (!setup_.converter.source) exposure.assumptions.push_back("no [source]: the input capacitor carries all of the input ripple");
         return exposure;
     }

@@ -67,3 +67,16 @@ TEST_CASE("a clamp below what the switch blocks earns no credit and burns what t
     for (const SeatReport& one : report.beside)
         if (one.reference == "clamp") CHECK(one.verdict == Verdict::rejected);
 }
+
+TEST_CASE("no load at all is judged as next to none and not refused", "[engine][answer][unknown]") {
+    const CheckReport report = check(setup_of(supply_text(), {"operating.output_current=0 A .. 2.5 A", "drive.minimum_on_time=400 ns"}), *find_rulebook("house"));
+    CHECK(report.verdict == Verdict::rejected);  // the shortest on-time delivers too much
+    REQUIRE(report.converter.size() == 1);
+    CHECK(report.converter.front().verdict == Verdict::rejected);
+    bool told = false;
+    for (const std::string& one : report.exposure.assumptions) told |= one.starts_with("a load of 0 A counted as 2.5 mA");
+    CHECK(told);
+    // Where nothing sets a shortest on-time, no load is regulated as well as any.
+    const CheckReport free = check(setup_of(supply_text(), {"operating.output_current=0 A .. 2.5 A", "drive.minimum_on_time="}), *find_rulebook("house"));
+    CHECK(free.converter.front().verdict == Verdict::holds);
+}
