@@ -24,6 +24,8 @@ namespace binwright {
 [[nodiscard]] Command rulebook_list_command();
 [[nodiscard]] Command rulebook_show_command();
 [[nodiscard]] Command rulebook_validate_command();
+[[nodiscard]] Command rulebook_compare_command();
+[[nodiscard]] Command wanted_command();
 [[nodiscard]] Command help_command();
 
 }  // namespace binwright
