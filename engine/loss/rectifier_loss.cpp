@@ -18,6 +18,14 @@ struct Line {
     double threshold, resistance;  ///< of one leg
 };
 
+constexpr double kFarApart = 8;  ///< ratio of two currents from which the curve between them stands clear above the straight line
+
+/// How far a curve that is all logarithm stands above its chord, at most: the most that two figures far apart leave open.
+double sag(double low, double high, double rise) {
+    const double ratio = std::log(high / low), at = (high - low) / ratio;
+    return rise * (std::log(at / low) / ratio - (at - low) / (high - low));
+}
+
 void read_forward(RectifierModel& model, const Part& part, End end, double legs) {
     const std::vector<const Figure*> figures = figures_of(part, Symbol::V_F);
     if (figures.empty()) {
@@ -42,9 +50,17 @@ void read_forward(RectifierModel& model, const Part& part, End end, double legs)
             line.resistance = std::max(0.0, (points.back().second - points.front().second) / (points.back().first - points.front().first));
             for (const auto& [current, volts] : points)  // no figure lies above the line
                 line.threshold = std::max(line.threshold, volts - line.resistance * current);
+            const double low = points.front().first, high = points.back().first, rise = points.back().second - points.front().second;
+            if (low > 0 && high > kFarApart * low && points.size() == 2 && rise > 0 && end != End::best) {
+                const double above = (end == End::worst ? 1.0 : 0.5) * sag(low, high, rise);
+                line.threshold += above;
+                model.rests_on.push_back(fmt::format("V_F between {} and {} counted {} above the straight line", format_quantity(low, Unit::ampere), format_quantity(high, Unit::ampere),
+                                                     format_quantity(above, Unit::volt, 2)));
+            }
         } else {
             line.threshold = share * points.front().second;
-            line.resistance = (1 - share) * points.front().second / points.front().first;
+            // At the best end nothing more than the threshold: what one current tells of others is a guess, and no ground to reject on.
+            line.resistance = end == End::best ? 0 : (1 - share) * points.front().second / points.front().first;
             guessed = true;
         }
         lines[temperature] = line;

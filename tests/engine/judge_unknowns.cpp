@@ -80,3 +80,26 @@ TEST_CASE("no load at all is judged as next to none and not refused", "[engine][
     const CheckReport free = check(setup_of(supply_text(), {"operating.output_current=0 A .. 2.5 A", "drive.minimum_on_time="}), *find_rulebook("house"));
     CHECK(free.converter.front().verdict == Verdict::holds);
 }
+
+TEST_CASE("one forward voltage at a small current is no ground to reject on", "[engine][answer][unknown]") {
+    // 0.3 V at 0.1 A carried as a straight line to 10 A would be 9 V: a guess, that no part of the kind need come near.
+    Setup setup = setup_of(supply_text());
+    std::vector<Fitted> fitted = setup.fitted.at(Seat::rectifier);
+    std::erase_if(fitted.front().lot.part.figures, [](const Figure& figure) { return figure.symbol == Symbol::V_F; });
+    fitted.front().lot.part.figures.push_back(parse_figure(Symbol::V_F, "0.30 V @ 0.1 A, 25 °C", Known::datasheet));
+    const CheckReport report = check(with_fitted(setup, Seat::rectifier, fitted), *find_rulebook("house"));
+    for (const char* rule : {"rectifier-temperature", "rectifier-runaway"}) {
+        INFO(rule);
+        REQUIRE(finding_of(report, Seat::rectifier, rule) != nullptr);
+        CHECK(finding_of(report, Seat::rectifier, rule)->verdict == Verdict::unproven);
+    }
+}
+
+TEST_CASE("between two figures far apart the forward voltage stands above the straight line", "[engine][loss]") {
+    // A junction's voltage goes with the logarithm of its current; what of the rise is logarithm two figures do not tell, so all
+    // of it is taken: at the mean of (10 − 0.1)/ln 100 = 2.15 A the curve stands 0.25 V·(0.666 − 0.207) above the chord.
+    Part part = lot_of("rectifier/schottky", {{"V_RRM", "60 V"}, {"I_F(AV)", "10 A"}, {"V_F", "0.30 V @ 0.1 A, 25 °C"}, {"V_F", "0.55 V @ 10 A, 25 °C"}}, Known::datasheet, "x").part;
+    const RectifierModel worst = rectifier_model(part, 1, End::worst), best = rectifier_model(part, 1, End::best);
+    REQUIRE(worst.threshold);
+    CHECK(*worst.threshold - *best.threshold == Approx(0.25 * (std::log(21.5) / std::log(100.) - (2.15 - 0.1) / 9.9)).epsilon(0.01));
+}
