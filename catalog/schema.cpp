@@ -50,6 +50,11 @@ constexpr const char* kSteps[] = {
         CREATE TABLE counter (name TEXT PRIMARY KEY, value INTEGER NOT NULL) STRICT;
         INSERT INTO counter VALUES ('lot number', 0), ('revision', 0);
     )sql",
+    // Version 2. What was undone when something new was done can never be redone, even when the new is undone in its turn.
+    R"sql(
+        ALTER TABLE history ADD COLUMN dropped INTEGER NOT NULL DEFAULT 0 CHECK (dropped IN (0, 1));
+        UPDATE history SET dropped = 1 WHERE undone = 1 AND id < coalesce((SELECT max(id) FROM history WHERE undone = 0), 0);
+    )sql",
 };
 static_assert(std::size(kSteps) == kSchemaVersion);
 
@@ -58,22 +63,33 @@ int pragma(SQLite::Database& database, const char* name) { return database.execA
 }  // namespace
 
 void prepare_schema(SQLite::Database& database, const std::string& path, bool may_write) {
-    const int version = pragma(database, "user_version");
-    const int application = pragma(database, "application_id");
-    const int tables = database.execAndGet("SELECT count(*) FROM sqlite_master").getInt();
-    const bool fresh = version == 0 && application == 0 && tables == 0;
-    if (!fresh && application != kApplicationId) throw StoreError(path + " is a database, but not a bin; it was left as it is");
-    if (version > kSchemaVersion)
-        throw StoreError(path + " was written by a newer version of this program (schema " + std::to_string(version) + ", this one knows " +
-                         std::to_string(kSchemaVersion) + "); it was left as it is");
-    if (version == kSchemaVersion) return;
-    if (!may_write) throw StoreError(path + (fresh ? " holds nothing yet" : " is of an older version; open it once for writing to bring it up"));
-    if (!fresh) {
-        SQLite::Database copy(path + ".before-schema-" + std::to_string(kSchemaVersion), SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE);
-        SQLite::Backup backup(copy, database);
-        backup.executeStep();
+    const auto version_of = [&] {
+        const int version = pragma(database, "user_version");
+        const int application = pragma(database, "application_id");
+        const int tables = database.execAndGet("SELECT count(*) FROM sqlite_master").getInt();
+        const bool fresh = version == 0 && application == 0 && tables == 0;
+        if (!fresh && application != kApplicationId) throw StoreError(path + " is a database, but not a bin; it was left as it is");
+        if (version > kSchemaVersion)
+            throw StoreError(path + " was written by a newer version of this program (schema " + std::to_string(version) + ", this one knows " +
+                             std::to_string(kSchemaVersion) + "); it was left as it is");
+        return version;
+    };
+    {
+        SQLite::Transaction one_sight(database);  // of three things that another program may be changing together
+        if (const int version = version_of(); version == kSchemaVersion) return;
+        else if (!may_write)
+            throw StoreError(path + (version == 0 ? " holds nothing yet" : " is of an older version; open it once for writing to bring it up"));
     }
     SQLite::Transaction transaction(database, SQLite::TransactionBehavior::IMMEDIATE);
+    const int version = version_of();  // another program may have brought it up meanwhile
+    if (version == kSchemaVersion) return;
+    if (version != 0) {
+        // Nobody else writes now, and nothing is written yet: a second reader sees the bin as it was.
+        SQLite::Database source(path, SQLite::OPEN_READWRITE, 5000);
+        SQLite::Database copy(path + ".before-schema-" + std::to_string(kSchemaVersion), SQLite::OPEN_READWRITE | SQLite::OPEN_CREATE, 5000);
+        SQLite::Backup backup(copy, source);
+        backup.executeStep();
+    }
     for (int step = version; step < kSchemaVersion; ++step) database.exec(kSteps[step]);
     database.exec("PRAGMA application_id = " + std::to_string(kApplicationId));
     database.exec("PRAGMA user_version = " + std::to_string(kSchemaVersion));

@@ -8,7 +8,7 @@
 namespace binwright {
 
 inline constexpr int kApplicationId = 0x62776268;  ///< "bwbh" in the file's header: this is a bin
-inline constexpr int kSchemaVersion = 1;
+inline constexpr int kSchemaVersion = 2;
 
 /// Brings an open database to the present schema: makes it new, or migrates it in one transaction.
 /// @throws StoreError when it is something else than a bin, or newer than this program

@@ -6,9 +6,11 @@
 #include <unistd.h>
 
 #include <chrono>
+#include <cmath>
 #include <cstdlib>
 #include <ctime>
 #include <filesystem>
+#include <thread>
 
 #include "catalog/record_json.hpp"
 #include "catalog/schema.hpp"
@@ -82,8 +84,21 @@ struct Store::Inside {
         prepare_schema(database, file, how != Open::read_only);
         if (how == Open::read_only) database.exec("PRAGMA query_only = ON");
         if (how != Open::read_only) {
-            database.exec("PRAGMA journal_mode = WAL");
+            write_ahead();
             database.exec("PRAGMA synchronous = FULL");
+        }
+    }
+
+    /// The change to a write-ahead log needs the bin alone, and does not wait for it by itself.
+    void write_ahead() {
+        for (int patience = 250;; --patience) {
+            try {
+                database.exec("PRAGMA journal_mode = WAL");
+                return;
+            } catch (const SQLite::Exception& error) {
+                if (error.getErrorCode() != SQLITE_BUSY || patience == 0) throw;
+                std::this_thread::sleep_for(std::chrono::milliseconds(20));
+            }
         }
     }
 
@@ -142,8 +157,21 @@ struct Store::Inside {
         statement.exec();
     }
 
+    /// What JSON would write as null, and nothing could read again.
+    static void check(const Figure& figure, Family family) {
+        if (!find_symbol(info(figure.symbol).name, family))
+            throw EditRefused(std::string(info(figure.symbol).name) + " is no figure of a " + std::string(to_string(family)));
+        const Spread& value = figure.value;
+        bool finite = std::isfinite(value.best) && std::isfinite(value.typical) && std::isfinite(value.worst);
+        for (const auto& condition : {figure.at.voltage, figure.at.current, figure.at.frequency, figure.at.temperature})
+            finite = finite && std::isfinite(condition.value_or(0));
+        if (!finite) throw EditRefused("the " + std::string(info(figure.symbol).name) + " of this edit is not a number");
+    }
+
     /// A row with the id it carries (0: a new one, given back in the record).
     void write(PartRecord& record, bool replace) {
+        for (const Figure& figure : record.part.figures) check(figure, record.part.family);
+        if (replace) keep_family(record);
         const std::string family(to_string(record.part.family)), attributes = nlohmann::json(record.part.attributes).dump(),
             figures = figures_text(record.part);
         if (replace) {
@@ -160,11 +188,31 @@ struct Store::Inside {
         }
     }
 
+    /// Readings carry figures of their part's family: a switch has no ESR.
+    void keep_family(const PartRecord& after) {
+        const auto before = part(after.id);
+        if (!before || before->part.family == after.part.family) return;
+        SQLite::Statement readings(database, "SELECT 1 FROM reading JOIN lot ON reading.lot_id = lot.id WHERE lot.part_id = ? LIMIT 1");
+        readings.bind(1, after.id);
+        if (readings.executeStep()) throw EditRefused("readings of its lots say that this type is a " + std::string(to_string(before->part.family)));
+    }
+
+    /// A lot with readings keeps to types of one family likewise.
+    void keep_family(const LotRecord& after) {
+        const auto type = part(after.part_id);
+        SQLite::Statement readings(database, "SELECT 1 FROM reading WHERE lot_id = ? LIMIT 1");
+        readings.bind(1, after.id);
+        const Family family = family_of_lot(after.id);
+        if (type->part.family != family && readings.executeStep())
+            throw EditRefused("readings of this lot say that it is of a " + std::string(to_string(family)) + " type");
+    }
+
     void write(LotRecord& lot, bool replace) {
         const std::string origin(to_string(lot.origin));
         if (lot.count < 0) throw EditRefused("a lot cannot hold " + std::to_string(lot.count) + " pieces");
         if (!part(lot.part_id)) throw EditRefused("the bin has no part type " + std::to_string(lot.part_id) + " for this lot");
         if (replace) {
+            keep_family(lot);
             run("UPDATE lot SET number = ?, part_id = ?, count = ?, place = ?, origin = ?, date_code = ?, donor = ?, note = ? WHERE id = ?", lot.number,
                 lot.part_id, lot.count, lot.place, origin, lot.date_code, lot.donor, lot.note, lot.id);
             return;
@@ -183,9 +231,7 @@ struct Store::Inside {
 
     void write(ReadingRecord& reading, bool replace) {
         if (!lot(reading.lot_id)) throw EditRefused("the bin has no lot for this reading");
-        const Family family = family_of_lot(reading.lot_id);
-        if (!find_symbol(info(reading.figure.symbol).name, family))
-            throw EditRefused(std::string(info(reading.figure.symbol).name) + " is no figure of a " + std::string(to_string(family)));
+        check(reading.figure, family_of_lot(reading.lot_id));
         const std::string figure = to_json(reading.figure).dump();
         if (replace) {
             run("UPDATE reading SET lot_id = ?, figure = ?, set_aside = ? WHERE id = ?", reading.lot_id, figure, reading.set_aside ? 1 : 0, reading.id);
@@ -263,6 +309,15 @@ Edit inverse(const Edit& done) {
     return back;
 }
 
+void check_text(const Edit& edit) {
+    try {
+        (void)to_json(edit).dump();
+        (void)nlohmann::json(edit.what).dump();
+    } catch (const nlohmann::json::type_error&) {
+        throw EditRefused("a text of this edit is not UTF-8");
+    }
+}
+
 /// Runs `action`, turning the library's failures into sentences with the path.
 template <class Action>
 auto guarded(const std::string& path, Action action) -> decltype(action()) {
@@ -309,9 +364,11 @@ Store& Store::operator=(Store&&) noexcept = default;
 
 Edit Store::apply(const Edit& edit) {
     return guarded(inside_->path, [&] {
+        check_text(edit);
         SQLite::Transaction transaction(inside_->database, SQLite::TransactionBehavior::IMMEDIATE);
         const Edit done = inside_->perform(edit);
         const Edit back = inverse(done);
+        inside_->run("UPDATE history SET dropped = 1 WHERE undone = 1");
         inside_->run("INSERT INTO history (at, what, forward, backward, undone) VALUES (?, ?, ?, ?, 0)", now(), edit.what, to_json(done).dump(),
                      to_json(back).dump());
         transaction.commit();
@@ -336,10 +393,7 @@ std::optional<HistoryEntry> Store::undo() {
 std::optional<HistoryEntry> Store::redo() {
     return guarded(inside_->path, [&]() -> std::optional<HistoryEntry> {
         SQLite::Transaction transaction(inside_->database, SQLite::TransactionBehavior::IMMEDIATE);
-        // Only what was undone since the newest change still done.
-        SQLite::Statement next(inside_->database,
-                               "SELECT id, at, what, forward FROM history WHERE undone = 1 AND id > "
-                               "coalesce((SELECT max(id) FROM history WHERE undone = 0), 0) ORDER BY id LIMIT 1");
+        SQLite::Statement next(inside_->database, "SELECT id, at, what, forward FROM history WHERE undone = 1 AND dropped = 0 ORDER BY id LIMIT 1");
         if (!next.executeStep()) return std::nullopt;
         HistoryEntry entry{next.getColumn(0).getInt64(), next.getColumn(1).getString(), next.getColumn(2).getString(), false};
         (void)inside_->perform(edit_from_json(nlohmann::json::parse(next.getColumn(3).getString())));
