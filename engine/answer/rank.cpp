@@ -150,12 +150,13 @@ std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot
                 ends.best = ends.worst;
                 const std::vector<Seat> all(std::begin(kSeats), std::end(kSeats));
                 std::vector<SeatReport> reports = judge_setup(with, ends, book, all, false, going);
-                // The worst end says all where everything holds there and nothing has a spread; a break may be one of the worst end
-                // alone, and the best end then tells.
+                // A break may be one of the worst end alone, and the best end then tells; and what holds must hold at both: a surge is
+                // the greater the better the others are.
                 const auto broken = [](const SeatReport& report) {
                     return std::any_of(report.findings.begin(), report.findings.end(), [](const Finding& finding) { return finding.verdict == Verdict::rejected; });
                 };
-                const bool both = differs_between_ends(with) || std::any_of(reports.begin(), reports.end(), broken);
+                const auto holds_here = [&](const SeatReport& report) { return report.seat == seat && report.verdict == Verdict::holds; };
+                const bool both = differs_between_ends(with) || std::any_of(reports.begin(), reports.end(), broken) || std::any_of(reports.begin(), reports.end(), holds_here);
                 if (both) {
                     ends.best = expose(with, End::best, book.allowances, going);
                     reports = judge_setup(with, ends, book, others(seat), false, going);
@@ -188,7 +189,7 @@ std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot
                 finding.lot = candidate.lot.label;
                 finding.part = candidate.lot.part.name;
                 finding.book = book.name;
-                candidate.report = SeatReport{seat, finding.reference, finding.lot, finding.part, finding.verdict, {finding}};
+                candidate.report = SeatReport{seat, finding.reference, finding.lot, finding.part, finding.verdict, {finding}, {}};
             }
         }
         candidate.preference = preference_of(candidate.report, seen, prefer);
