@@ -47,22 +47,6 @@ bool comparable(const Figure& reading, const Figure& figure) {
            near(reading.at.frequency, figure.at.frequency, usual.frequency, 3);
 }
 
-/// Why a reading lies outside what the type's own figure allows; empty when it does not.
-std::string outside_type(const Figure& reading, const Part& part) {
-    for (const Figure& figure : part.figures) {
-        if (figure.symbol != reading.symbol || figure.known == Known::kind) continue;
-        if (figure.column != Column::maximum && figure.column != Column::minimum && !info(figure.symbol).rating) continue;
-        if (!(figure.at == reading.at) && !info(figure.symbol).rating) continue;
-        const Better better = info(figure.symbol).better;
-        const bool bad = (better == Better::lower && reading.value.worst > figure.value.worst) ||
-                         (better == Better::higher && reading.value.worst < figure.value.worst);
-        if (bad)
-            return fmt::format("{} measured {}, and the type's limit is {}", info(figure.symbol).name,
-                               format_quantity(reading.value.worst, info(figure.symbol).unit), format_quantity(figure.value.worst, info(figure.symbol).unit));
-    }
-    return "";
-}
-
 bool matches_comparison(const Lot& lot, std::string_view piece, bool& understood) {
     for (const std::string_view op : {">=", "<=", "=", ">", "<"}) {
         const std::size_t at = piece.find(op);
@@ -105,7 +89,7 @@ Lot as_lot(const PartRecord& part, const LotRecord& lot, const std::vector<Readi
     std::vector<Figure> counted;
     for (const ReadingRecord& reading : readings) {
         if (reading.set_aside) continue;
-        if (std::string why = outside_type(reading.figure, part.part); !why.empty() && !result.suspect) {
+        if (std::string why = outside_limits(part.part, reading.figure); !why.empty() && !result.suspect) {
             result.suspect = true;
             result.suspect_why = std::move(why);
         }

@@ -116,6 +116,10 @@ struct Lot {
 /// A sentence why the value is outside what its kind of part can be (an ESR of 38 Ω on 470 µF), or empty.
 [[nodiscard]] std::string implausible(const Part& part, const Figure& figure);
 
+/// A sentence why a measurement is not of a part within what is printed and published of its type, or empty: below a rating, or beyond a
+/// minimum or maximum under the same conditions or harder ones. Estimates of the kind are no limits.
+[[nodiscard]] std::string outside_limits(const Part& part, const Figure& reading);
+
 [[nodiscard]] std::string_view to_string(Family family);   ///< "switch", "rectifier", "capacitor"
 [[nodiscard]] std::string_view to_string(Known known);     ///< "measured", "datasheet", "marked", "told", "kind"
 [[nodiscard]] std::string_view to_string(Column column);   ///< "", "min", "typ", "max"
