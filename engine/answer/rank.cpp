@@ -189,7 +189,13 @@ std::vector<Candidate> rank(const Setup& setup, Seat seat, const std::vector<Lot
                 finding.lot = candidate.lot.label;
                 finding.part = candidate.lot.part.name;
                 finding.book = book.name;
-                candidate.report = SeatReport{seat, finding.reference, finding.lot, finding.part, finding.verdict, {finding}, {}};
+                candidate.report = SeatReport{};
+                candidate.report.seat = seat;
+                candidate.report.reference = finding.reference;
+                candidate.report.lot = finding.lot;
+                candidate.report.part = finding.part;
+                candidate.report.verdict = finding.verdict;
+                candidate.report.findings = {finding};
             }
         }
         candidate.preference = preference_of(candidate.report, seen, prefer);
